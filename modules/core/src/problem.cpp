@@ -1,0 +1,7 @@
+#include "wavefount/core/problem.h"
+
+namespace wavefount {
+
+Problem::~Problem() = default;
+
+}  // namespace wavefount

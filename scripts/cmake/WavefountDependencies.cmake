@@ -1,0 +1,17 @@
+# Everything found here is one of Debian 12's packages (scripts/setup names them).
+find_package(Threads REQUIRED)
+find_package(Eigen3 REQUIRED NO_MODULE)
+find_package(spdlog REQUIRED)
+find_package(TBB REQUIRED)
+find_package(pugixml REQUIRED)
+find_package(yaml-cpp REQUIRED)
+find_package(CLI11 REQUIRED)
+find_package(nlohmann_json REQUIRED)
+find_package(Boost REQUIRED)
+find_package(PkgConfig REQUIRED)
+pkg_check_modules(TIFF4 REQUIRED IMPORTED_TARGET libtiff-4)
+pkg_check_modules(XLSXWRITER REQUIRED IMPORTED_TARGET xlsxwriter)
+pkg_check_modules(CAIRO REQUIRED IMPORTED_TARGET cairo)
+pkg_check_modules(XXHASH REQUIRED IMPORTED_TARGET libxxhash)
+
+include(WavefountPixels)
