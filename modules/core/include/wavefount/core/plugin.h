@@ -11,12 +11,8 @@
 
 namespace wavefount {
 
-/// The object factory of one plug-in: give it the steps, and `itkLoad()` is done.
-///
-///   extern "C" WAVEFOUNT_EXPORT const char* wavefount_abi() { return WAVEFOUNT_ABI; }
-///   extern "C" WAVEFOUNT_EXPORT itk::ObjectFactoryBase* itkLoad() { ... }
-///
-/// WAVEFOUNT_PLUGIN(factory_name, steps...) below writes both.
+/// The object factory of one plug-in. WAVEFOUNT_PLUGIN below makes one, adds the steps and writes
+/// the two symbols that the loader looks for.
 class PluginFactory : public itk::ObjectFactoryBase {
  public:
   using Self = PluginFactory;
@@ -46,26 +42,31 @@ class PluginFactory : public itk::ObjectFactoryBase {
 
 }  // namespace wavefount
 
-#define WAVEFOUNT_EXPORT __attribute__((visibility("default")))
-
-/// Writes the two functions that a plug-in exports. `description` is a sentence; the rest are step
-/// classes derived from FrameStep, AcquisitionStep or FolderStep with itkSimpleNewMacro.
-#define WAVEFOUNT_PLUGIN(description, ...)                          \
-  extern "C" WAVEFOUNT_EXPORT const char* wavefount_abi() {         \
-    return WAVEFOUNT_ABI;                                           \
-  }                                                                 \
-  extern "C" WAVEFOUNT_EXPORT itk::ObjectFactoryBase* itkLoad() {   \
-    static const auto factory = [] {                                \
-      const auto made = wavefount::PluginFactory::New(description); \
-      [&]<class... Steps>(wavefount::StepList<Steps...>) {          \
-        (made->template add<Steps>(), ...);                         \
-      }(wavefount::StepList<__VA_ARGS__>());                        \
-      return made;                                                  \
-    }();                                                            \
-    return factory.GetPointer();                                    \
-  }
-
 namespace wavefount {
 template <class... Steps>
 struct StepList {};
+
+template <class... Steps>
+PluginFactory::Pointer make_factory(const char* description, StepList<Steps...> /*steps*/) {
+  auto factory = PluginFactory::New(description);
+  (factory->template add<Steps>(), ...);
+  return factory;
+}
 }  // namespace wavefount
+
+#define WAVEFOUNT_EXPORT __attribute__((visibility("default")))
+
+/// Writes the two symbols that a plug-in exports: `wavefount_abi`, which the loader compares before
+/// it calls anything, and `itkLoad()`. `description` is a sentence; the rest are step classes
+/// derived from FrameStep, AcquisitionStep or FolderStep, with itkFactorylessNewMacro.
+#define WAVEFOUNT_PLUGIN(description, ...)                                        \
+  extern "C" {                                                                    \
+  WAVEFOUNT_EXPORT extern const char wavefount_abi[];                             \
+  const char wavefount_abi[] = WAVEFOUNT_ABI;                                     \
+  WAVEFOUNT_EXPORT itk::ObjectFactoryBase* itkLoad();                             \
+  itk::ObjectFactoryBase* itkLoad() {                                             \
+    static const auto factory =                                                   \
+        wavefount::make_factory(description, wavefount::StepList<__VA_ARGS__>()); \
+    return factory.GetPointer();                                                  \
+  }                                                                               \
+  }
