@@ -48,6 +48,26 @@ int compare_runs(std::string_view left, std::string_view right) {
   return left.compare(right);
 }
 
+/// Length in bytes of the well-formed UTF-8 sequence at the start (The Unicode Standard 15,
+/// table 3-7), 0 if there is none.
+std::size_t utf8_sequence(std::string_view text) {
+  const auto byte = [&](std::size_t i) { return static_cast<unsigned char>(text[i]); };
+  const unsigned char lead = byte(0);
+  if (lead < 0x80) return 1;
+  const std::size_t length = lead < 0xC2    ? 0
+                             : lead < 0xE0  ? 2
+                             : lead < 0xF0  ? 3
+                             : lead <= 0xF4 ? 4
+                                            : 0;
+  if (length == 0 || text.size() < length) return 0;
+  const unsigned char lowest = lead == 0xE0 ? 0xA0 : lead == 0xF0 ? 0x90 : 0x80;
+  const unsigned char highest = lead == 0xED ? 0x9F : lead == 0xF4 ? 0x8F : 0xBF;
+  if (byte(1) < lowest || byte(1) > highest) return 0;
+  for (std::size_t i = 2; i < length; ++i)
+    if (byte(i) < 0x80 || byte(i) > 0xBF) return 0;
+  return length;
+}
+
 }  // namespace
 
 std::string number_text(double value) {
@@ -105,6 +125,17 @@ std::string joined(const std::vector<std::string>& parts, std::string_view separ
     text += part;
   }
   return text;
+}
+
+std::string valid_utf8(std::string_view text) {
+  std::string valid;
+  valid.reserve(text.size());
+  while (!text.empty()) {
+    const auto length = utf8_sequence(text);
+    valid += length > 0 ? text.substr(0, length) : "\xEF\xBF\xBD";
+    text.remove_prefix(length > 0 ? length : 1);
+  }
+  return valid;
 }
 
 bool natural_less(std::string_view left, std::string_view right) {

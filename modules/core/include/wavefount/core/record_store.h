@@ -49,6 +49,14 @@ class RecordStore {
     return at == records_.end() ? nullptr : static_cast<const T*>(at->second.get());
   }
 
+  /// The record, or an empty one where no step has made it.
+  template <class T>
+  const T& get_or_empty() const {
+    static const T empty{};
+    const auto* record = peek<T>();
+    return record ? *record : empty;
+  }
+
   template <class T>
   void drop() {
     records_.erase(T::record_name);
