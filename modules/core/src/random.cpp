@@ -55,11 +55,17 @@ std::uint64_t seed_from(std::uint64_t seed, std::string_view name) {
   return mixed(hash + mixed(seed + golden));
 }
 
-std::uint64_t RandomStream::bits() { return mixed(state_ += golden); }
+std::uint64_t RandomStream::bits() {
+  return mixed(state_ += golden);
+}
 
-double RandomStream::uniform() { return (static_cast<double>(bits() >> 12) + 0.5) * 0x1.0p-52; }
+double RandomStream::uniform() {
+  return (static_cast<double>(bits() >> 12) + 0.5) * 0x1.0p-52;
+}
 
-double RandomStream::normal() { return normal_quantile(uniform()); }
+double RandomStream::normal() {
+  return normal_quantile(uniform());
+}
 
 double normal_quantile(double share) {
   if (share > 0.5) return -normal_quantile(1 - share);
