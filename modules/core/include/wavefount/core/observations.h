@@ -40,6 +40,7 @@ struct FrameObservation {
   double shift_x_px = 0;  ///< of the content against the first frame, full-size pixels
   double shift_y_px = 0;
   double shift_quality = 0;  ///< 0 to 1: height of the correlation peak
+  double shift_se_px = 0;    ///< standard error of the better determined direction
   double total_light = 0;    ///< sum of counts over the tubes, dark offset included
   double tube_pixels = 0;    ///< full-size pixels that total_light covers
   double noise = 0;          ///< of one reduced pixel in the cytoplasm, counts
