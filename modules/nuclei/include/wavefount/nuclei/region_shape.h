@@ -1,0 +1,34 @@
+#pragma once
+
+#include <opencv2/core/mat.hpp>
+#include <vector>
+
+#include "wavefount/core/observations.h"
+#include "wavefount/nuclei/region_growing.h"
+
+namespace wavefount::nuclei {
+
+/// The shape of one region of a label window, in pixels of the window.
+struct RegionShape {
+  int pixels = 0;
+  double x = 0, y = 0;     ///< centroid
+  double area = 0;         ///< subpixel: an edge pixel counts by how far the contour covers it
+  double slenderness = 1;  ///< ratio of the axes of the ellipse with the same second moments
+  double slope = 0;        ///< mean fall of brightness across the contour, counts a pixel
+  bool split = false;      ///< touches another region
+  std::vector<Run> runs;   ///< of the window, not of the frame
+};
+
+/// Shape of the pixels that carry `label`. `image`: what the region was grown on; `half`: the level
+/// of its contour.
+RegionShape shape_of(const cv::Mat1i& labels, int label, const cv::Mat1f& image, double half);
+
+/// Share of the convex hull that the runs fill, 1 when they have no dent.
+double solidity(const std::vector<Run>& runs);
+
+/// Joins regions that are one nucleus: bright all the way across their common border, and without a
+/// neck. `seeds` gives the levels; joined labels take the lower index.
+void join_regions(cv::Mat1i& labels, const cv::Mat1f& image, const std::vector<Seed>& seeds,
+                  double largest_radius);
+
+}  // namespace wavefount::nuclei

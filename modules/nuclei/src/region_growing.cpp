@@ -1,0 +1,189 @@
+#include "wavefount/nuclei/region_growing.h"
+
+#include <algorithm>
+#include <cmath>
+#include <cstdint>
+#include <limits>
+#include <opencv2/imgproc.hpp>
+#include <queue>
+
+namespace wavefount::nuclei {
+namespace {
+
+constexpr int none = -1;
+/// A seed covers its pixels up to this share of its radius.
+constexpr double seed_share = 0.5;
+constexpr int steps_x[] = {1, -1, 0, 0};
+constexpr int steps_y[] = {0, 0, 1, -1};
+
+double squared(double value) {
+  return value * value;
+}
+
+double reach_of(const Seed& seed) {
+  return 2 * seed.radius + 2;
+}
+
+/// Calls visit(x, y, squared distance) for the window's pixels within `reach` of a seed.
+template <class Visit>
+void for_disc(const cv::Size& size, const Seed& seed, double reach, Visit visit) {
+  const int x0 = std::max(0, static_cast<int>(std::ceil(seed.x - reach)));
+  const int x1 = std::min(size.width - 1, static_cast<int>(std::floor(seed.x + reach)));
+  const int y0 = std::max(0, static_cast<int>(std::ceil(seed.y - reach)));
+  const int y1 = std::min(size.height - 1, static_cast<int>(std::floor(seed.y + reach)));
+  for (int y = y0; y <= y1; ++y) {
+    for (int x = x0; x <= x1; ++x) {
+      const double distance = squared(x - seed.x) + squared(y - seed.y);
+      if (distance <= reach * reach) visit(x, y, distance);
+    }
+  }
+}
+
+class Growth {
+ public:
+  Growth(const cv::Mat1f& image, const std::vector<Seed>& seeds)
+      : image_(image), seeds_(seeds), labels_(image.size(), none) {}
+
+  cv::Mat1i run() {
+    if (seeds_.size() > 1) measure_depth();
+    plant();
+    flood();
+    fill_holes();
+    return labels_;
+  }
+
+ private:
+  struct Front {
+    float key;
+    std::uint32_t order;
+    std::int32_t x, y, label;
+    bool operator<(const Front& other) const {
+      return key != other.key ? key < other.key : order > other.order;
+    }
+  };
+
+  /// Distance to the common outline over the radius of the seed nearest for its size.
+  void measure_depth() {
+    cv::Mat1f nearest(image_.size(), std::numeric_limits<float>::infinity());
+    cv::Mat1b bright(image_.size(), static_cast<unsigned char>(0));
+    cv::Mat1f scale(image_.size(), 1.0F);
+    for (const Seed& seed : seeds_) {
+      for_disc(image_.size(), seed, reach_of(seed), [&](int x, int y, double distance) {
+        const auto apart = static_cast<float>(distance / squared(seed.radius));
+        if (apart >= nearest(y, x)) return;
+        nearest(y, x) = apart;
+        bright(y, x) = static_cast<double>(image_(y, x)) >= seed.half ? 255 : 0;
+        scale(y, x) = static_cast<float>(1 / seed.radius);
+      });
+    }
+    cv::distanceTransform(bright, depth_, cv::DIST_L2, cv::DIST_MASK_5);
+    depth_ = depth_.mul(scale);
+  }
+
+  float key(int x, int y, const Seed& seed) const {
+    if (seeds_.size() == 1) return 0;
+    const double floor = seed.half - seed.peak / 2;
+    const double level = (static_cast<double>(image_(y, x)) - floor) / std::max(seed.peak, 1e-12);
+    return depth_(y, x) + static_cast<float>(std::min(level, 1.2));
+  }
+
+  /// Each seed's core; where cores meet, the seed nearest for its size has the pixel.
+  void plant() {
+    cv::Mat1f nearest(image_.size(), std::numeric_limits<float>::infinity());
+    for (std::size_t i = 0; i < seeds_.size(); ++i) {
+      const Seed& seed = seeds_[i];
+      const double reach = std::max(seed_share * seed.radius, 0.75);
+      for_disc(image_.size(), seed, reach, [&](int x, int y, double distance) {
+        const auto apart = static_cast<float>(distance / squared(seed.radius));
+        if (static_cast<double>(image_(y, x)) < seed.half || apart >= nearest(y, x)) return;
+        nearest(y, x) = apart;
+        labels_(y, x) = static_cast<int>(i);
+      });
+    }
+    for (int y = 0; y < labels_.rows; ++y)
+      for (int x = 0; x < labels_.cols; ++x)
+        if (labels_(y, x) >= 0) spread(x, y, labels_(y, x));
+  }
+
+  void spread(int x, int y, int label) {
+    const Seed& seed = seeds_[static_cast<std::size_t>(label)];
+    for (int i = 0; i < 4; ++i) {
+      const int to_x = x + steps_x[i];
+      const int to_y = y + steps_y[i];
+      if (to_x < 0 || to_y < 0 || to_x >= labels_.cols || to_y >= labels_.rows) continue;
+      if (labels_(to_y, to_x) != none) continue;
+      if (static_cast<double>(image_(to_y, to_x)) < seed.half) continue;
+      if (squared(to_x - seed.x) + squared(to_y - seed.y) > squared(reach_of(seed))) continue;
+      fronts_.push({key(to_x, to_y, seed), order_++, to_x, to_y, label});
+    }
+  }
+
+  void flood() {
+    while (!fronts_.empty()) {
+      const Front front = fronts_.top();
+      fronts_.pop();
+      int& label = labels_(front.y, front.x);
+      if (label != none) continue;
+      label = front.label;
+      spread(front.x, front.y, front.label);
+    }
+  }
+
+  /// Gives each hole inside one nucleus to it; a gap that several enclose is cytoplasm.
+  void fill_holes() {
+    cv::Mat1b seen(labels_.size(), static_cast<unsigned char>(0));
+    for (int y = 0; y < labels_.rows; ++y) {
+      for (int x = 0; x < labels_.cols; ++x) {
+        if (labels_(y, x) != none || seen(y, x) != 0) continue;
+        const Gap gap = gap_from(x, y, seen);
+        if (gap.open || gap.lowest != gap.highest) continue;
+        for (const cv::Point& at : gap.pixels) labels_(at) = gap.lowest;
+      }
+    }
+  }
+
+  struct Gap {
+    std::vector<cv::Point> pixels;
+    bool open = false;  ///< reaches the window's rim
+    int lowest = std::numeric_limits<int>::max();
+    int highest = none;  ///< labels around it
+  };
+
+  Gap gap_from(int x0, int y0, cv::Mat1b& seen) const {
+    Gap gap;
+    gap.pixels.emplace_back(x0, y0);
+    seen(y0, x0) = 1;
+    for (std::size_t next = 0; next < gap.pixels.size(); ++next) {
+      const cv::Point from = gap.pixels[next];
+      for (int i = 0; i < 4; ++i) {
+        const int x = from.x + steps_x[i];
+        const int y = from.y + steps_y[i];
+        if (x < 0 || y < 0 || x >= labels_.cols || y >= labels_.rows) {
+          gap.open = true;
+        } else if (labels_(y, x) != none) {
+          gap.lowest = std::min(gap.lowest, labels_(y, x));
+          gap.highest = std::max(gap.highest, labels_(y, x));
+        } else if (seen(y, x) == 0) {
+          seen(y, x) = 1;
+          gap.pixels.emplace_back(x, y);
+        }
+      }
+    }
+    return gap;
+  }
+
+  const cv::Mat1f& image_;
+  const std::vector<Seed>& seeds_;
+  cv::Mat1i labels_;
+  cv::Mat1f depth_;
+  std::priority_queue<Front> fronts_;
+  std::uint32_t order_ = 0;
+};
+
+}  // namespace
+
+cv::Mat1i grow_regions(const cv::Mat1f& image, const std::vector<Seed>& seeds) {
+  return Growth(image, seeds).run();
+}
+
+}  // namespace wavefount::nuclei
