@@ -41,6 +41,6 @@ struct FolderListing {
 
 /// Finds the acquisitions of a folder and joins the sheet `acquisitions.csv`; reads no pixels.
 /// Throws Problem when the folder is not there, holds no acquisition, or the sheet cannot be read.
-FolderListing list_films(const std::filesystem::path& folder, const ChannelRoles& roles = {});
+FolderListing list_films(const std::filesystem::path& folder);
 
 }  // namespace wavefount
