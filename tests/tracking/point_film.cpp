@@ -189,13 +189,17 @@ class Maker {
                           uniform(0.6, 1.4)});
   }
 
-  /// Re-forms displaced, drawn back a little, so that nuclei keep apart over many cycles.
+  /// Re-forms displaced within its own territory, drawn back a little.
   Point moved(Point home, Point place) {
     const double far = chance(plan_.far_share) ? 3 : 1;
     const double sd = far * plan_.displacement_um;
-    return {
-        place.x + sd * normal() + 0.4 * (home.x - place.x),
-        std::clamp(place.y + sd * normal() + 0.4 * (home.y - place.y), 10.0, plan_.width_um - 10)};
+    const double most = 0.6 * plan_.spacing_um;
+    while (true) {
+      const Point to{place.x + sd * normal() + 0.4 * (home.x - place.x),
+                     place.y + sd * normal() + 0.4 * (home.y - place.y)};
+      const bool inside = to.y > 10 && to.y < plan_.width_um - 10;
+      if (inside && std::hypot(to.x - place.x, to.y - place.y) < most) return to;
+    }
   }
 
   void show(const Stretch& stretch) {
@@ -365,7 +369,7 @@ LinkScore score_links(const PointFilm& made, const Nuclei& nuclei) {
     for (std::size_t j = 0; j < made.truth[i].size(); ++j) {
       const auto& who = made.truth[i][j];
       if (who.nucleus < 0) {
-        if (id_of[i][j] > 0 && who.nucleus != debris_mark) ++score.false_kept;
+        if (id_of[i][j] > 0 && who.nucleus == false_alarm) ++score.false_kept;
         continue;
       }
       ++score.sightings;

@@ -66,7 +66,7 @@ struct LinkScore {
   int nuclei = 0, nuclei_invented = 0;
   int debris_kept = 0;
   int sightings = 0, sightings_lost = 0;  ///< of nuclei, in no trace
-  int false_kept = 0;                     ///< false alarms and clouds in a trace
+  int false_kept = 0;                     ///< false alarms in a trace
 
   LinkScore& operator+=(const LinkScore& other);
   double link_share() const { return links == 0 ? 1 : double(links_right) / links; }

@@ -12,6 +12,8 @@ constexpr std::size_t fewest_interphases = 4;
 constexpr int fewest_cycling = 2;
 /// What stays this much longer than nearly all whole interphases of the film has missed a mitosis.
 constexpr double overdue = 1.5;
+/// A thing that is gone this many steps before the film's end has emptied, or left the view.
+constexpr int gone_steps = 5;
 /// Change of brightness within an interphase's time, as a share of what cycling nuclei show, below
 /// which a thing is static.
 constexpr double static_share = 0.5;
@@ -83,6 +85,7 @@ std::vector<bool> find_debris(const FilmDetections& film, const std::vector<Segm
     if (cycled) continue;
     const auto detections = detections_of(segments, chains[i]);
     if (film.time_of(detections.back()) - film.time_of(detections.front()) < longest) continue;
+    if (film.all[detections.back()].step + gone_steps < film.steps()) continue;
     debris[i] = windowed_range(film, detections, window) < least_range;
   }
   return debris;

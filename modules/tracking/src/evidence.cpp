@@ -20,7 +20,7 @@ constexpr int enough_singles = 20;
 constexpr double cloud_share = 0.3;
 
 bool touches_film_edge(const FilmDetections& film, const Segment& segment) {
-  return first_step(film, segment) == 0 || last_step(film, segment) == film.steps() - 1;
+  return at_film_start(film, segment) || at_film_end(film, segment);
 }
 
 double interphase_of(const FilmDetections& film, const std::vector<Segment>& segments) {

@@ -13,6 +13,8 @@ constexpr double gate_sd = 6;
 constexpr double gate_share_of_spacing = 0.6;
 /// A change of area or brightness weighs no more than this: outlines fail now and then.
 constexpr double most_look_cost = 3;
+/// Brightness and area together within some two standard deviations of a step's change.
+constexpr double alike_cost = 2.5;
 /// Two misses in a row happen; three at five missed in a hundred once in eight thousand. A longer
 /// run is bridged only while it is shorter than the shortest mitosis would be by far.
 constexpr int missed_steps = 3;
@@ -22,15 +24,6 @@ constexpr double miss_cost = 3;
 /// A nucleus never loses this part of its brightness between two sightings but by mitosis.
 constexpr double lost_log_ratio = -0.6;
 
-/// The larger of the statistical gate and the nucleus' own radius: what lies within its outline is
-/// the nucleus itself, whatever its motion was.
-double gate_um(const FilmDetections& film, const Motion& motion, const Detection& from,
-               const Detection& to, double minutes) {
-  const double own = std::max(from.radius_um, to.radius_um);
-  const double statistical = gate_sd * std::sqrt(motion.variance(minutes));
-  return std::max(own, std::min(statistical, gate_share_of_spacing * film.spacing_um));
-}
-
 double look_cost(const Motion& motion, const Detection& from, const Detection& to, double steps) {
   const auto squared = [&](double ratio, double sd) {
     const double deviations = ratio / (sd * std::max(1.0, steps));
@@ -38,6 +31,17 @@ double look_cost(const Motion& motion, const Detection& from, const Detection& t
   };
   return squared(log_ratio(to.brightness, from.brightness), motion.log_brightness_sd) +
          squared(log_ratio(to.area_um2, from.area_um2), motion.log_area_sd);
+}
+
+/// Whether two sightings may be one nucleus: within the statistical gate, or within the nucleus'
+/// own outline, where it was anyhow, if it also looks the same.
+bool within_gate(const FilmDetections& film, const Motion& motion, const Detection& from,
+                 const Detection& to, double away_um, double minutes) {
+  const double statistical = std::min(gate_sd * std::sqrt(motion.variance(minutes)),
+                                      gate_share_of_spacing * film.spacing_um);
+  if (away_um <= statistical) return true;
+  return away_um <= std::max(from.radius_um, to.radius_um) &&
+         look_cost(motion, from, to, minutes / film.interval_min) < alike_cost;
 }
 
 /// Cost of a row or column without partner: every pair within its gate may be made, yet never is
@@ -59,7 +63,7 @@ std::vector<AssignmentCandidate> step_candidates(const FilmDetections& film, con
     for (int to = columns; to < film.first[step + 1]; ++to) {
       const auto& other = film.all[to];
       const double away = distance(other.place_um, expected);
-      if (away > gate_um(film, motion, one, other, minutes)) continue;
+      if (!within_gate(film, motion, one, other, away, minutes)) continue;
       const double cost = displacement_cost(away, motion.variance(minutes)) +
                           look_cost(motion, one, other, minutes / film.interval_min);
       candidates.push_back({from - rows, to - columns, cost});
@@ -95,7 +99,7 @@ std::vector<AssignmentCandidate> missed_candidates(const FilmDetections& film, c
       const auto& to = film.all[at->detections.front()];
       const Point expected = from.place_um + flow.shift(from.place_um, from.step, to.step);
       const double away = distance(to.place_um, expected);
-      if (away > gate_um(film, motion, from, to, minutes)) continue;
+      if (!within_gate(film, motion, from, to, away, minutes)) continue;
       const double cost = displacement_cost(away, motion.variance(minutes)) +
                           look_cost(motion, from, to, minutes / film.interval_min) +
                           miss_cost * (gap - 1);

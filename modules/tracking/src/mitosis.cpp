@@ -72,12 +72,10 @@ class MitosisLinker {
       ends_.end.push_back(end_place(film_, one));
       ends_.start_brightness.push_back(start_brightness(film_, one));
       ends_.end_brightness.push_back(end_brightness(film_, one));
-      const bool at_start = first_step(film_, one) == 0;
-      const bool at_end = last_step(film_, one) == film_.steps() - 1;
       const bool strong = !evidence_.weak[i];
-      ends_.may_go_on[i] =
-          !at_end && (strong || (at_start && ends_.end_brightness.back() >= grown));
-      ends_.may_begin[i] = !at_start && (strong || at_end);
+      const bool grown_at_start = at_film_start(film_, one) && ends_.end_brightness.back() >= grown;
+      ends_.may_go_on[i] = last_step(film_, one) < film_.steps() - 1 && (strong || grown_at_start);
+      ends_.may_begin[i] = first_step(film_, one) > 0 && (strong || at_film_end(film_, one));
       ends_.by_start.push_back(static_cast<int>(i));
     }
     std::stable_sort(ends_.by_start.begin(), ends_.by_start.end(),

@@ -23,8 +23,8 @@ constexpr double gap_freedom = 5;
 /// Beyond so many standard deviations of the logarithm a gap is no mitosis.
 constexpr double gap_reach_sd = 4;
 /// How far nuclei can re-form, in standard deviations of the displacement and in spacings.
-constexpr double reach_sd = 5;
-constexpr double reach_spacings = 0.6;
+constexpr double reach_sd = 8;
+constexpr double reach_spacings = 1;
 /// Chance that an end inside an interphase is a run of missed detections, before looking.
 constexpr double missed_share = 0.02;
 /// Density of the log brightness ratio of an end and an unrelated start.

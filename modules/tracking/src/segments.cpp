@@ -64,6 +64,14 @@ double longest_min(const FilmDetections& film, const Segment& segment) {
   return film.time_min[after] - film.time_min[before];
 }
 
+bool at_film_start(const FilmDetections& film, const Segment& segment) {
+  return first_step(film, segment) <= 1;
+}
+
+bool at_film_end(const FilmDetections& film, const Segment& segment) {
+  return last_step(film, segment) >= film.steps() - 2;
+}
+
 std::vector<Segment> segments_of(const FilmDetections& film, const std::vector<Link>& links) {
   std::vector<int> next(film.all.size(), -1);
   std::vector<bool> has_previous(film.all.size(), false);

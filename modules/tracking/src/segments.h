@@ -29,6 +29,10 @@ double start_brightness(const FilmDetections& film, const Segment& segment);
 /// The longest that it can have lasted: from the step before its first to the step after its last.
 double longest_min(const FilmDetections& film, const Segment& segment);
 
+/// Whether the film starts, or ends, with it; one step may have been missed there.
+bool at_film_start(const FilmDetections& film, const Segment& segment);
+bool at_film_end(const FilmDetections& film, const Segment& segment);
+
 /// Segments joined by links; every detection is in one, in order of their first detection.
 std::vector<Segment> segments_of(const FilmDetections& film, const std::vector<Link>& links);
 std::vector<Link> links_of(const std::vector<Segment>& segments);
