@@ -1,6 +1,7 @@
 #include "wavefount/synthetic/film_files.h"
 
 #include <algorithm>
+#include <deque>
 #include <fstream>
 #include <future>
 #include <vector>
@@ -25,7 +26,7 @@ Counts counts_of(const Image& image) {
   return counts;
 }
 
-/// Frames in order, a few rendered ahead on other threads.
+/// Frames in order, some rendered ahead on other threads while the first is written.
 class FramesAhead {
  public:
   FramesAhead(const Scene& scene, int threads)
@@ -33,12 +34,17 @@ class FramesAhead {
 
   template <typename Write>
   void each(Write write) {
-    for (int from = 0; from < frames_; from += ahead_) {
-      std::vector<std::future<Counts>> batch;
-      for (int i = from; i < std::min(frames_, from + ahead_); ++i)
-        batch.push_back(
-            std::async(std::launch::async, [this, i] { return counts_of(*renderer_.frame(i)); }));
-      for (auto& counts : batch) write(counts.get());
+    std::deque<std::future<Counts>> waiting;
+    for (int next = 0; next < frames_ || !waiting.empty();) {
+      while (next < frames_ && static_cast<int>(waiting.size()) < ahead_) {
+        waiting.push_back(std::async(std::launch::async, [this, frame = next] {
+          return counts_of(*renderer_.frame(frame));
+        }));
+        ++next;
+      }
+      const Counts counts = waiting.front().get();
+      waiting.pop_front();
+      write(counts);
     }
   }
 

@@ -2,7 +2,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <opencv2/imgproc.hpp>
 
 namespace wavefount {
 namespace {
@@ -95,8 +94,8 @@ FarLight::Cells::Cells(const Scene& scene, const StillLayers& still)
     }
 }
 
-FarLight::FarLight(const StillLayers& still, const Cells& cells)
-    : still_(&still), cells_(&cells), grid_(cells.rows, cells.columns, CV_32F, cv::Scalar(0)) {}
+FarLight::FarLight(const Cells& cells)
+    : cells_(&cells), grid_(cells.rows, cells.columns, CV_32F, cv::Scalar(0)) {}
 
 void FarLight::add(const Tube& tube, int tube_index, TubePlace centre, double sigma_um,
                    double total_light) {
@@ -122,12 +121,26 @@ void FarLight::add(const Tube& tube, int tube_index, TubePlace centre, double si
   empty_ = false;
 }
 
-void FarLight::pour(cv::Mat& canvas) const {
-  cv::Mat fine;
-  cv::resize(grid_, fine, cv::Size(grid_.cols * cell_px, grid_.rows * cell_px), 0, 0,
-             cv::INTER_LINEAR);
-  const cv::Mat cut = fine(cv::Rect(0, 0, canvas.cols, canvas.rows));
-  canvas += cut.mul(still_->inside);
+void FarLight::row(double x, double y, std::size_t count, std::vector<float>& values) const {
+  values.resize(count);
+  constexpr double middle = (cell_px - 1) / 2.0;
+  const auto knot = [](double place, int knots) {
+    return std::clamp(place, 0.0, std::max(0.0, knots - 1.0001));
+  };
+  const double v = knot((y - middle) / cell_px, grid_.rows);
+  const auto top = static_cast<int>(v);
+  const auto below = static_cast<float>(v - top);
+  const float* upper = grid_.ptr<float>(top);
+  const float* lower = grid_.ptr<float>(std::min(top + 1, grid_.rows - 1));
+  for (std::size_t i = 0; i < count; ++i) {
+    const double u = knot((x + static_cast<double>(i) - middle) / cell_px, grid_.cols);
+    const auto left = static_cast<int>(u);
+    const int right = std::min(left + 1, grid_.cols - 1);
+    const auto beside = static_cast<float>(u - left);
+    const float at_left = upper[left] + below * (lower[left] - upper[left]);
+    const float at_right = upper[right] + below * (lower[right] - upper[right]);
+    values[i] = at_left + beside * (at_right - at_left);
+  }
 }
 
 }  // namespace wavefount

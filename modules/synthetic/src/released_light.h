@@ -26,8 +26,9 @@ class FarLight {
  public:
   /// Adds the content of one disc, spread as a normal distribution of the given variance.
   void add(const Tube& tube, int tube_index, TubePlace centre, double sigma_um, double total_light);
-  /// Adds what was gathered to a canvas of the still layers' size.
-  void pour(cv::Mat& canvas) const;
+  /// What was gathered, along a row of the canvas: `count` values from (x, y), a pixel apart. The
+  /// place may lie between pixels.
+  void row(double x, double y, std::size_t count, std::vector<float>& values) const;
   bool empty() const { return empty_; }
 
   /// Places of the coarse cells in their tube, shared by all frames of a scene.
@@ -37,10 +38,9 @@ class FarLight {
     std::vector<int> tube;
     std::vector<float> along_um, across_um;
   };
-  FarLight(const StillLayers& still, const Cells& cells);
+  explicit FarLight(const Cells& cells);
 
  private:
-  const StillLayers* still_;
   const Cells* cells_;
   cv::Mat grid_;
   bool empty_ = true;

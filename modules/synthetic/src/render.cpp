@@ -20,14 +20,14 @@ constexpr double far_sigma_um = 24;
 
 /// Uneven brightness inside a nucleus: three plane waves fixed to it.
 class Texture {
-  static constexpr int wave_count = 3;
+  static constexpr int wave_count = 6;
 
  public:
   Texture(const SceneNucleus& nucleus, std::uint64_t seed) {
     RandomSequence random(seed, 1000 + static_cast<std::uint64_t>(nucleus.number));
     for (auto& wave : waves_) {
       const double turn = random.uniform(0, 2 * M_PI);
-      const double cycles = random.uniform(0.5, 1.6);  // over the radius
+      const double cycles = random.uniform(0.25, 1.1);  // over the radius
       wave = {2 * M_PI * cycles * std::cos(turn), 2 * M_PI * cycles * std::sin(turn),
               random.uniform(0, 2 * M_PI)};
     }
@@ -64,7 +64,7 @@ class FramePainter {
                int frame)
       : scene_(scene),
         still_(still),
-        far_(still, cells),
+        far_(cells),
         time_min_(scene.times_min[static_cast<std::size_t>(frame)]),
         drift_(scene.drift_um(frame)),
         image_(make_image(scene.width, scene.height)),
@@ -227,21 +227,32 @@ class FramePainter {
     }
   }
 
-  /// Cuts the frame out of the canvas where the drift has carried it.
+  /// Cuts the frame out of the canvas where the drift has carried it, linearly between pixels, and
+  /// adds the light that has spread far.
   void add_still() {
-    cv::Mat canvas = still_.content;
-    if (!far_.empty()) {
-      canvas = still_.content.clone();
-      far_.pour(canvas);
-    }
     const double left = still_.margin_px - drift_.x / scene_.pixel_um;
     const double top = still_.margin_px - drift_.y / scene_.pixel_um;
-    cv::Mat cut;
-    cv::getRectSubPix(canvas, pixels_.size(),
-                      cv::Point2f(static_cast<float>(left + (pixels_.cols - 1) / 2.0),
-                                  static_cast<float>(top + (pixels_.rows - 1) / 2.0)),
-                      cut);
-    pixels_ += cut;
+    const auto column = static_cast<int>(std::floor(left));
+    const auto beside = static_cast<float>(left - column);
+    const auto width = static_cast<std::size_t>(pixels_.cols);
+    std::vector<float> far;
+    for (int y = 0; y < pixels_.rows; ++y) {
+      const auto row = static_cast<int>(std::floor(top + y));
+      const auto below = static_cast<float>(top + y - row);
+      const float* upper = still_.content.ptr<float>(row) + column;
+      const float* lower = still_.content.ptr<float>(row + 1) + column;
+      float* out = pixels_.ptr<float>(y);
+      for (std::size_t x = 0; x < width; ++x) {
+        const float here = upper[x] + below * (lower[x] - upper[x]);
+        const float next = upper[x + 1] + below * (lower[x + 1] - upper[x + 1]);
+        out[x] += here + beside * (next - here);
+      }
+      if (far_.empty()) continue;
+      far_.row(left, top + y, width, far);
+      const float* inside =
+          still_.inside.ptr<float>(static_cast<int>(std::lround(top)) + y) + std::lround(left);
+      for (std::size_t x = 0; x < width; ++x) out[x] += inside[x] * far[x];
+    }
   }
 
   Point image_px(Point place_um) const {
