@@ -41,7 +41,7 @@ ReducedFilm::~ReducedFilm() {
   ::unlink(file_.c_str());
 }
 
-void ReducedFilm::write(int frame, const Image& image) {
+void ReducedFilm::write(int frame, const Image& image) const {
   const std::size_t count = static_cast<std::size_t>(width_) * static_cast<std::size_t>(height_);
   std::vector<std::uint16_t> steps(count);
   const float* pixels = image.GetBufferPointer();

@@ -33,7 +33,8 @@ class ReducedFilm {
   int height() const { return height_; }
 
   /// `image` has exactly width() × height() pixels. Throws Problem when the disk is full.
-  void write(int frame, const Image& image);
+  /// Const: frame steps see the record so, and only the file changes.
+  void write(int frame, const Image& image) const;
   /// A frame as counts; a frame never written reads as `lowest` everywhere.
   ImagePointer read(int frame) const;
 

@@ -1,0 +1,44 @@
+#pragma once
+
+#include <vector>
+
+#include "wavefount/tube/axis.h"
+
+namespace wavefount::tube {
+
+/// A wall, an end or a closed outline along a row of profiles that lead from inside to outside.
+struct Border {
+  std::vector<double> position;  ///< smoothed, pixels along the profile; one a profile
+  std::vector<double> weight;    ///< 0 where not found or dropped as debris, bubble …
+  double found_share = 0;        ///< profiles whose edge was seen, of those asked for
+  double out_of_view_share = 0;  ///< profiles that leave the image before any edge
+  double contrast = 0;           ///< inside less outside, median, counts
+  double roughness = 0;          ///< robust deviation of single profiles from the curve, pixels
+};
+
+/// What to look for. All in pixels along the profiles.
+struct BorderSearch {
+  /// Rough position, one a profile; NaN where none is asked for, infinity where the profile leaves
+  /// the image before any edge.
+  std::vector<double> expected;
+  double reach = 10;             ///< how far around it
+  double inside_depth = 20;      ///< the inside level is taken from this far in
+  double outside_depth = 15;     ///< and the outside level from this far out
+  double outside_level = 0;      ///< where no outside is in view
+  double blur = 4;               ///< next to the edge neither level holds
+  double cutoff = 100;           ///< waves shorter than this are no shape of the border, profiles
+};
+
+/// Half-height positions between local inside and outside level, then a robust smooth curve. Where
+/// the wall glows (a bright line that the half-height position would be pushed out by) the stacked
+/// profile is fitted by a blurred step with a bright line on it, and the curve moved accordingly.
+/// `profiles`: one row a profile, values rising outwards with the column.
+Border find_border(const Straightened& profiles, const BorderSearch& search);
+
+/// How far the half-height position lies outside the edge when a bright line glows along it:
+/// `profile` runs from inside to outside in steps of `step` pixels, its half-height position at
+/// `zero`. 0 where no line stands out.
+double glow_offset(const std::vector<double>& profile, double step, double zero, double inside,
+                   double outside);
+
+}  // namespace wavefount::tube

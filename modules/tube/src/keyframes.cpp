@@ -1,0 +1,149 @@
+#include "wavefount/tube/keyframes.h"
+
+#include <algorithm>
+#include <cmath>
+#include <cstddef>
+#include <limits>
+#include <opencv2/imgproc.hpp>
+#include <utility>
+
+#include "wavefount/core/robust.h"
+#include "wavefount/tube/shift.h"
+
+namespace wavefount::tube {
+namespace {
+
+/// A chained shift is replaced by the direct one when that is confirmed at least this well.
+constexpr double trusted_agreement = 0.6;
+/// Once with the shifts of the chain, twice with those against the median image.
+constexpr int median_rounds = 2;
+
+/// The image moved back by its shift; outside it NaN.
+cv::Mat moved_back(const Image& image, double x, double y) {
+  const cv::Mat source = as_matrix(image);
+  cv::Mat moved;
+  const cv::Mat place = (cv::Mat_<double>(2, 3) << 1, 0, x, 0, 1, y);
+  cv::warpAffine(source, moved, place, source.size(), cv::INTER_LINEAR | cv::WARP_INVERSE_MAP,
+                 cv::BORDER_REPLICATE);
+  const float none = std::numeric_limits<float>::quiet_NaN();
+  for (int row = 0; row < moved.rows; ++row) {
+    for (int column = 0; column < moved.cols; ++column) {
+      const bool seen = column + x > -0.5 && column + x < source.cols - 0.5 && row + y > -0.5 &&
+                        row + y < source.rows - 0.5;
+      if (!seen) moved.at<float>(row, column) = none;
+    }
+  }
+  return moved;
+}
+
+/// Quantile of a few sorted values.
+float sorted_quantile(const std::vector<float>& sorted, double share) {
+  const double at = share * static_cast<double>(sorted.size() - 1);
+  const auto below = static_cast<std::size_t>(at);
+  const auto above = std::min(below + 1, sorted.size() - 1);
+  const auto part = static_cast<float>(at - static_cast<double>(below));
+  return sorted[below] + part * (sorted[above] - sorted[below]);
+}
+
+void combine(const std::vector<ImagePointer>& images, AlignedImages& aligned) {
+  std::vector<cv::Mat> moved;
+  for (std::size_t k = 0; k < images.size(); ++k)
+    moved.push_back(moved_back(*images[k], aligned.x[k], aligned.y[k]));
+  const int width = image_width(*images[0]);
+  const int height = image_height(*images[0]);
+  aligned.median = make_image(width, height);
+  aligned.low = make_image(width, height);
+  aligned.spread = make_image(width, height);
+  std::vector<float> values;
+  std::vector<float> levelled;
+  for (int y = 0; y < height; ++y) {
+    for (int x = 0; x < width; ++x) {
+      values.clear();
+      levelled.clear();
+      for (std::size_t k = 0; k < moved.size(); ++k) {
+        const float value = moved[k].at<float>(y, x);
+        if (!std::isfinite(value)) continue;
+        values.push_back(value);
+        levelled.push_back(static_cast<float>((value - aligned.offset[k]) / aligned.gain[k]));
+      }
+      std::sort(values.begin(), values.end());
+      std::sort(levelled.begin(), levelled.end());
+      const auto at = static_cast<std::ptrdiff_t>(y) * width + x;
+      aligned.median->GetBufferPointer()[at] = sorted_quantile(values, 0.5);
+      aligned.low->GetBufferPointer()[at] = sorted_quantile(values, 0.2);
+      // The range from 10 to 90 % is 2.563 standard deviations of normal data; a nucleus absent a
+      // tenth of the time counts as varying.
+      aligned.spread->GetBufferPointer()[at] =
+          (sorted_quantile(levelled, 0.9) - sorted_quantile(levelled, 0.1)) / 2.563F;
+    }
+  }
+}
+
+void put(const Shift& shift, std::size_t k, AlignedImages& aligned) {
+  aligned.x[k] = shift.x;
+  aligned.y[k] = shift.y;
+  aligned.agreement[k] = shift.agreement;
+}
+
+/// Each against the one before, and, where that holds better, against the first.
+void chain(const std::vector<MovingImage>& moving, const std::vector<ImagePointer>& images,
+           AlignedImages& aligned) {
+  const ShiftReference first(*images[0]);
+  for (std::size_t k = 1; k < images.size(); ++k) {
+    const ShiftReference before(*images[k - 1]);
+    auto step = before.find(moving[k], 0, 0, true);
+    step.x += aligned.x[k - 1];
+    step.y += aligned.y[k - 1];
+    const auto direct = first.find(moving[k], step.x, step.y, false);
+    put(direct.agreement > trusted_agreement && direct.blind_directions == 0 ? direct : step, k,
+        aligned);
+  }
+}
+
+void take_first_as_origin(AlignedImages& aligned) {
+  const double x = aligned.x[0];
+  const double y = aligned.y[0];
+  for (auto& one : aligned.x) one -= x;
+  for (auto& one : aligned.y) one -= y;
+}
+
+}  // namespace
+
+AlignedImages combine_at(const std::vector<ImagePointer>& images, std::vector<double> x,
+                         std::vector<double> y) {
+  AlignedImages aligned;
+  aligned.x = std::move(x);
+  aligned.y = std::move(y);
+  aligned.agreement.assign(images.size(), 1);
+  aligned.gain.assign(images.size(), 1);
+  aligned.offset.assign(images.size(), 0);
+  combine(images, aligned);
+  return aligned;
+}
+
+AlignedImages align(const std::vector<ImagePointer>& images) {
+  AlignedImages aligned;
+  aligned.x.assign(images.size(), 0);
+  aligned.y.assign(images.size(), 0);
+  aligned.agreement.assign(images.size(), 1);
+  aligned.gain.assign(images.size(), 1);
+  aligned.offset.assign(images.size(), 0);
+  std::vector<MovingImage> moving;
+  for (const auto& image : images) moving.emplace_back(*image);
+  chain(moving, images, aligned);
+  combine(images, aligned);
+  for (int round = 0; round < median_rounds && images.size() > 2; ++round) {
+    const ShiftReference middle(*aligned.median, aligned.spread);
+    for (std::size_t k = 0; k < images.size(); ++k) {
+      const auto shift = middle.find(moving[k], aligned.x[k], aligned.y[k], false);
+      put(shift, k, aligned);
+      aligned.gain[k] = shift.gain;
+      aligned.offset[k] = shift.offset;
+    }
+    take_first_as_origin(aligned);
+    combine(images, aligned);
+  }
+  return aligned;
+}
+
+}  // namespace wavefount::tube
