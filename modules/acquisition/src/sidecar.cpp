@@ -227,9 +227,9 @@ std::string nearest_key(const std::string& word) {
 }
 
 void note_unknown(Sidecar& sidecar, const YamlValue& value) {
-  sidecar.notes.push_back("The sidecar " + value.file + ", line " +
-                          std::to_string(value.node.Mark().line + 1) + ", has the unknown key " +
-                          in_quotes(value.key) + ", which was left out; the nearest known key is " +
+  sidecar.notes.push_back("The sidecar " + value.file + ", line " + std::to_string(value.line) +
+                          ", has the unknown key " + in_quotes(value.key) +
+                          ", which was left out; the nearest known key is " +
                           nearest_key(lower_case(value.key.substr(0, 60))) + ".");
 }
 
@@ -266,7 +266,8 @@ Sidecar read_sidecar(const std::filesystem::path& file) {
   }
   std::set<std::string> seen;
   for (const auto& entry : root) {
-    const YamlValue value{name, entry.first.IsScalar() ? entry.first.Scalar() : "", entry.second};
+    const YamlValue value{name, entry.first.IsScalar() ? entry.first.Scalar() : "", entry.second,
+                          entry.first.Mark().line + 1};
     if (!seen.insert(value.key).second) {
       throw Problem("The sidecar " + name + " gives " + in_quotes(value.key) +
                     " twice; keep one of the lines.");

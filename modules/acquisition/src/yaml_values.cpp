@@ -32,9 +32,8 @@ Point point_of(const YamlValue& value) {
 }  // namespace
 
 void YamlValue::refuse(const std::string& must_be) const {
-  const int line = node.Mark().line + 1;
-  throw Problem("The sidecar " + file + (line > 0 ? ", line " + std::to_string(line) : "") +
-                ", gives " + shown(node) + " for " + key + ", which must be " + must_be + ".");
+  throw Problem("The sidecar " + file + ", line " + std::to_string(line) + ", gives " +
+                shown(node) + " for " + key + ", which must be " + must_be + ".");
 }
 
 YAML::Node load_yaml(const std::filesystem::path& file) {

@@ -15,10 +15,13 @@ struct YamlValue {
   std::string file;  ///< name of the sidecar
   std::string key;
   YAML::Node node;
+  int line = 0;  ///< from 1
 
   /// Throws Problem: file, line, key, what the value must be.
   [[noreturn]] void refuse(const std::string& must_be) const;
-  YamlValue item(const YAML::Node& inner) const { return {file, key, inner}; }
+  YamlValue item(const YAML::Node& inner) const {
+    return {file, key, inner, inner.Mark().line + 1};
+  }
 };
 
 /// Loads a YAML file of at most 4 MiB. Throws Problem with line and column.
