@@ -114,7 +114,7 @@ TEST_F(Tables, ExplainEveryColumnAndSpellUnitsOut) {
       EXPECT_TRUE(headings.insert(column.heading).second) << column.heading;
       EXPECT_TRUE(column.explanation.ends_with('.')) << table.name << ' ' << column.name;
       if (column.name.ends_with("_um") || column.name.ends_with("_um_per_min")) {
-        EXPECT_NE(column.heading.find("micrometres"), std::string::npos) << column.name;
+        EXPECT_NE(column.heading.find("micrometre"), std::string::npos) << column.name;
       }
       if (column.name.ends_with("_min")) {
         EXPECT_NE(column.heading.find("minute"), std::string::npos) << column.name;

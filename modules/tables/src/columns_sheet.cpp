@@ -22,6 +22,8 @@ void fill_columns_sheet(WorkbookFile& workbook, lxw_worksheet* sheet,
     write_text(sheet, 0, i, headings[i], workbook.format(CellStyle::heading));
   }
   worksheet_freeze_panes(sheet, 1, 0);
+  worksheet_set_landscape(sheet);
+  worksheet_fit_to_pages(sheet, 1, 0);
   lxw_row_t row = 0;
   for (const auto& declared : declared_tables()) {
     for (const auto& column : joined_table_columns(folder, declared.name).columns) {

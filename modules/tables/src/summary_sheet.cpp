@@ -9,9 +9,11 @@
 namespace wavefount {
 namespace {
 
-constexpr double label_width = 34;
-constexpr double figure_width = 12;
+constexpr double label_width = 46;
+constexpr double figure_width = 14;
 constexpr double words_width = 100;
+constexpr double title_height = 30;   // points
+constexpr double figure_height = 20;  // points
 constexpr lxw_col_t words_column = 5;
 constexpr double line_height = 13;       // points of a line of text
 constexpr double letters_of_line = 110;  // that fit into the column of words
@@ -51,6 +53,7 @@ class SummarySheet {
   }
 
   void head(const std::vector<std::string>& cut_notes) {
+    worksheet_set_row(sheet_, row_, title_height, nullptr);
     text(0, "What was found", CellStyle::title);
     ++row_;
     text(0,
@@ -65,7 +68,7 @@ class SummarySheet {
   }
 
   void figure(const std::string& label, std::optional<double> value, const std::string& words) {
-    worksheet_set_row(sheet_, row_, 20, nullptr);
+    worksheet_set_row(sheet_, row_, figure_height, nullptr);
     text(0, label, CellStyle::label);
     if (value) number(1, *value, workbook_.format(CellStyle::figure));
     text(2, words, CellStyle::note);
@@ -109,12 +112,14 @@ class SummarySheet {
            std::to_string(speeds.size()) + " waves that have a measured speed";
   }
 
-  void section(const std::string& title, const std::vector<std::string>& headings) {
-    for (lxw_col_t i = 0; i <= words_column; ++i)
-      text(i, i == 0 ? title : std::string(), CellStyle::section);
-    for (lxw_col_t i = 0; i < headings.size(); ++i)
-      if (!headings[i].empty())
-        write_text(sheet_, row_, i, headings[i], workbook_.format(CellStyle::section));
+  /// A line of headings; all but those of words stand over numbers.
+  void section(const std::string& title, const std::vector<std::string>& over_numbers,
+               const std::string& over_words = {}) {
+    text(0, title, CellStyle::section);
+    for (lxw_col_t i = 1; i < words_column; ++i)
+      text(i, i <= over_numbers.size() ? over_numbers[i - 1] : std::string(),
+           CellStyle::section_number);
+    text(words_column, over_words, CellStyle::section_words);
     ++row_;
   }
 
@@ -131,7 +136,7 @@ class SummarySheet {
     });
     int sum = 0;
     for (const auto& row : rows) sum += row.count;
-    section(title, {"", "Number", "Share"});
+    section(title, {"Number", "Share"});
     const auto first = row_;
     for (const auto& row : rows) {
       text(0, row.words, CellStyle::text);
@@ -176,7 +181,7 @@ class SummarySheet {
   }
 
   void acquisitions() {
-    section("Each acquisition", {"", "Nuclei", "Waves", "µm/min", "For review", "In words"});
+    section("Each acquisition", {"Nuclei", "Waves", "Speed, µm/min", "For review"}, "In words");
     for (const auto& one : summary_.acquisitions) acquisition(one);
   }
 

@@ -66,6 +66,9 @@ class SheetFiller {
       write_text(sheet_, 0, i, columns_[i].heading, workbook_.format(CellStyle::heading));
     }
     worksheet_freeze_panes(sheet_, 1, 1);
+    worksheet_set_landscape(sheet_);
+    worksheet_fit_to_pages(sheet_, 1, 0);
+    worksheet_repeat_rows(sheet_, 0, 0);
   }
 
   void row(lxw_row_t at, const std::vector<std::string>& cells) {

@@ -106,6 +106,7 @@ void WorkbookFile::make_text_styles() {
   styles_[CellStyle::text] = add_format(false, ink, body_size);
   auto* wrapped = add_format(false, ink, body_size);
   format_set_text_wrap(wrapped);
+  format_set_indent(wrapped, 1);
   styles_[CellStyle::wrapped] = wrapped;
   auto* label = add_format(false, ink, 11);
   format_set_align(label, LXW_ALIGN_VERTICAL_CENTER);
@@ -114,22 +115,25 @@ void WorkbookFile::make_text_styles() {
   format_set_align(note, LXW_ALIGN_VERTICAL_CENTER);
   format_set_indent(note, 1);
   styles_[CellStyle::note] = note;
-  auto* link = add_format(false, deep, body_size);
-  format_set_underline(link, LXW_UNDERLINE_SINGLE);
-  format_set_align(link, LXW_ALIGN_VERTICAL_CENTER);
-  styles_[CellStyle::link] = link;
   styles_[CellStyle::failed] = add_format(true, warning, body_size);
   auto* failed_wrapped = add_format(false, warning, body_size);
   format_set_text_wrap(failed_wrapped);
+  format_set_indent(failed_wrapped, 1);
   styles_[CellStyle::failed_wrapped] = failed_wrapped;
 }
 
 void WorkbookFile::make_heading_styles() {
   styles_[CellStyle::title] = add_format(true, deep, 20);
-  auto* section = add_format(true, deep, 13);
-  format_set_bottom(section, LXW_BORDER_MEDIUM);
-  format_set_bottom_color(section, deep);
-  styles_[CellStyle::section] = section;
+  for (const auto style :
+       {CellStyle::section, CellStyle::section_number, CellStyle::section_words}) {
+    auto* section = add_format(true, deep, style == CellStyle::section ? 13 : body_size);
+    format_set_bottom(section, LXW_BORDER_MEDIUM);
+    format_set_bottom_color(section, deep);
+    format_set_align(section, LXW_ALIGN_VERTICAL_BOTTOM);
+    if (style == CellStyle::section_number) format_set_align(section, LXW_ALIGN_RIGHT);
+    if (style == CellStyle::section_words) format_set_indent(section, 1);
+    styles_[style] = section;
+  }
   auto* heading = add_format(true, deep, body_size);
   format_set_text_wrap(heading);
   format_set_bg_color(heading, pale);

@@ -17,9 +17,10 @@ enum class CellStyle {
   share,
   title,
   section,
+  section_number,
+  section_words,
   heading,
   note,
-  link,
   failed,
   failed_wrapped
 };
