@@ -52,14 +52,20 @@ class Between {
     rest_ = to.place_um - from.place_um - moved;
   }
 
-  /// `step`: the last usable one not after the frame.
+  /// `step`: the last usable one not after the frame, and before the later sighting's.
   Point at(int step, double time_min) const {
-    const double start = film_.time_min[from_.step], end = film_.time_min[to_.step];
-    const double share = std::clamp((time_min - start) / (end - start), 0.0, 1.0);
-    return from_.place_um + flow_.shift(from_.place_um, from_.step, step) + share * rest_;
+    const Point before = flow_.shift(from_.place_um, from_.step, step);
+    const Point after = flow_.shift(from_.place_um, from_.step, step + 1);
+    return from_.place_um + before +
+           share(film_.time_min[step], film_.time_min[step + 1], time_min) * (after - before) +
+           share(film_.time_min[from_.step], film_.time_min[to_.step], time_min) * rest_;
   }
 
  private:
+  static double share(double start, double end, double at) {
+    return std::clamp((at - start) / (end - start), 0.0, 1.0);
+  }
+
   const FilmDetections& film_;
   const Flow& flow_;
   const Detection& from_;
