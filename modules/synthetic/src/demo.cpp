@@ -3,12 +3,11 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
-#include <fstream>
 
 #include "wavefount/core/problem.h"
-#include "wavefount/core/text.h"
 #include "wavefount/synthetic/film_files.h"
 #include "wavefount/synthetic/truth.h"
+#include "wavefount/tables/csv_writer.h"
 
 namespace wavefount {
 namespace {
@@ -59,14 +58,19 @@ FilmFormat format_of(const DemoOptions& options, std::size_t index) {
 }
 
 void write_sheet(const std::vector<SceneRecipe>& recipes, const std::filesystem::path& file) {
-  std::ofstream out(file, std::ios::binary);
-  out << "acquisition,tube_width_um,batch,condition,replicate,temperature_c,exposure_ms\n";
+  std::vector<Column> columns;
+  for (const char* name : {"acquisition", "tube_width_um", "batch", "condition", "replicate",
+                           "temperature_c", "exposure_ms"})
+    columns.push_back({name, name, ColumnKind::text, 0, ""});
+  CsvWriter writer(file);
+  writer.header(columns);
+  constexpr std::size_t batches = 4;
   for (std::size_t i = 0; i < recipes.size(); ++i)
-    out << recipes[i].name << ',' << number_text(recipes[i].tube_width_um) << ",batch-" << 1 + i % 4
-        << ',' << (recipes[i].spacing_um > 0 ? "nuclei" : "cytoplasm only") << ',' << 1 + i / 4
-        << ",20,80\n";
-  out.close();
-  if (!out) throw Problem("cannot write " + file.string() + "; is the disk full?");
+    writer.row({recipes[i].name, recipes[i].tube_width_um,
+                "batch-" + std::to_string(1 + i % batches),
+                std::string(recipes[i].spacing_um > 0 ? "nuclei" : "cytoplasm only"),
+                static_cast<std::int64_t>(1 + i / batches), std::int64_t{20}, std::int64_t{80}});
+  writer.commit();
 }
 
 void refuse_used(const std::filesystem::path& folder) {
@@ -108,6 +112,7 @@ void write_demo(const std::filesystem::path& folder, const DemoOptions& options)
                   std::to_string(scene.nuclei.size()) + " nuclei");
     write_film(scene, films, {format_of(options, i), options.compression, options.threads});
     write_truth(scene, folder / "truth");
+    if (options.labels) write_truth_labels(scene, folder / "truth");
   }
   write_sheet(recipes, films / "acquisitions.csv");
 }

@@ -23,6 +23,11 @@ Point SceneLife::centre_um(double time_min) const {
   return {place_um.x + velocity_um_per_min.x * age, place_um.y + velocity_um_per_min.y * age};
 }
 
+double SceneNucleus::outline(double direction) const {
+  const double turned = direction - angle;
+  return 1 + elongation * std::cos(2 * turned) + lobes * std::cos(3 * turned);
+}
+
 Point Scene::drift_um(int frame) const {
   const auto index = static_cast<std::size_t>(frame);
   return index < nuisances.drift_um.size() ? nuisances.drift_um[index] : Point{};

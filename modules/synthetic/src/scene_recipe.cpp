@@ -98,6 +98,20 @@ void lay_focus(const SceneRecipe& recipe, RandomSequence& random, Scene& scene) 
   }
 }
 
+/// A source in view is a nucleus: the one nearest to where the recipe wants it.
+void settle_on_nucleus(const Scene& scene, SceneSource& source) {
+  if (!source.in_view) return;
+  const Point wanted{source.along_um, source.across_um};
+  double nearest = 1e9;
+  for (const auto& nucleus : scene.nuclei) {
+    const double distance = std::hypot(nucleus.along_um - wanted.x, nucleus.across_um - wanted.y);
+    if (nucleus.tube != source.tube || distance >= nearest) continue;
+    nearest = distance;
+    source.along_um = nucleus.along_um;
+    source.across_um = nucleus.across_um;
+  }
+}
+
 }  // namespace
 
 Scene build_scene(const SceneRecipe& recipe) {
@@ -121,6 +135,7 @@ Scene build_scene(const SceneRecipe& recipe) {
   scene.nuisances.bleaching_per_min = recipe.bleaching_per_min;
   scene.nuisances.wall_glow = recipe.wall_glow;
   lay_nuclei(recipe, random, scene);
+  for (auto& source : scene.sources) settle_on_nucleus(scene, source);
   schedule_lives(recipe, random, scene);
   return scene;
 }

@@ -1,10 +1,8 @@
 #include <algorithm>
-#include <fstream>
 #include <map>
 
-#include "wavefount/core/problem.h"
-#include "wavefount/core/text.h"
 #include "wavefount/synthetic/truth.h"
+#include "wavefount/tables/csv_writer.h"
 
 namespace wavefount {
 namespace {
@@ -33,6 +31,16 @@ Table table(std::string name, const std::vector<std::string>& texts,
     made.columns.push_back({column, column, ColumnKind::text, 0, ""});
   for (const auto& column : numbers)
     made.columns.push_back({column, column, ColumnKind::number, 4, ""});
+  return made;
+}
+
+Table film_table(const Scene& scene) {
+  auto made = table("film", {"acquisition"},
+                    {"pixel_um", "frames", "frame_interval_min", "width_px", "height_px"});
+  FilmDescription film;
+  film.times_min = scene.times_min;
+  made.rows.push_back(Row{scene.name, scene.pixel_um, whole(scene.frames()),
+                          film.frame_interval_min(), whole(scene.width), whole(scene.height)});
   return made;
 }
 
@@ -144,29 +152,19 @@ Table origins_table(const Scene& scene, const std::vector<TruthWave>& waves) {
 }
 
 void write_table(const Table& table, const std::filesystem::path& file) {
-  std::ofstream out(file, std::ios::binary);
-  for (std::size_t i = 0; i < table.columns.size(); ++i)
-    out << (i ? "," : "") << table.columns[i].name;
-  out << "\r\n";
-  for (const auto& row : table.rows) {
-    for (std::size_t i = 0; i < row.size(); ++i) {
-      if (i) out << ',';
-      if (const auto* text = std::get_if<std::string>(&row[i])) out << *text;
-      if (const auto* number = std::get_if<double>(&row[i])) out << number_text(*number);
-      if (const auto* integer = std::get_if<std::int64_t>(&row[i])) out << *integer;
-    }
-    out << "\r\n";
-  }
-  out.close();
-  if (!out) throw Problem("cannot write " + file.string() + "; is the disk full?");
+  CsvWriter writer(file);
+  writer.header(table.columns);
+  for (const auto& row : table.rows) writer.row(row);
+  writer.commit();
 }
 
 }  // namespace
 
 std::vector<Table> truth_tables(const Scene& scene) {
   const auto waves = truth_waves(scene);
-  return {tubes_table(scene),          nuclei_table(scene),       traces_table(scene),
-          entries_table(scene, waves), waves_table(scene, waves), origins_table(scene, waves)};
+  return {film_table(scene),          tubes_table(scene),          nuclei_table(scene),
+          traces_table(scene),        entries_table(scene, waves), waves_table(scene, waves),
+          origins_table(scene, waves)};
 }
 
 void write_truth(const Scene& scene, const std::filesystem::path& truth) {

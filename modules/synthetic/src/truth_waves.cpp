@@ -96,6 +96,11 @@ TruthOrigin origin_of(const Scene& scene, int source, const std::vector<Member>&
   return origin;
 }
 
+bool comes_from_outside(const Scene& scene, const TruthWave& wave) {
+  return !wave.origins.empty() &&
+         !scene.sources[static_cast<std::size_t>(wave.origins.front().source)].in_view;
+}
+
 void list_origins(const Scene& scene, const std::vector<Member>& members, TruthWave& wave) {
   constexpr int least_basin = 3;
   std::set<int> reached;
@@ -110,17 +115,19 @@ void list_origins(const Scene& scene, const std::vector<Member>& members, TruthW
   const double resolvable = std::max(3 * scene.waves.jitter_min, 2 * interval);
   for (auto& origin : wave.origins) {
     origin.prominence_min = prominence(scene, wave, origin.source);
-    origin.judged = origin.watched && wave.travelling && origin.basin_nuclei >= least_basin &&
+    origin.judged = origin.watched && wave.travelling && !comes_from_outside(scene, wave) &&
+                    origin.basin_nuclei >= least_basin &&
                     origin.prominence_min.value_or(resolvable) >= resolvable;
   }
 }
 
-std::optional<Answer> answer_of(const Scene& scene, const TruthWave& wave) {
-  if (static_cast<int>(wave.nuclei.size()) < few_nuclei) return Answer::too_few;
+/// `entering`: nuclei in view that enter while the film runs, whether or not that entry counts.
+std::optional<Answer> answer_of(const Scene& scene, const TruthWave& wave, int entering) {
+  if (entering < few_nuclei) return Answer::too_few;
+  if (static_cast<int>(wave.nuclei.size()) < few_nuclei) return std::nullopt;
   if (scene.waves.together) return Answer::synchronous;
   if (wave.origins.empty() || !wave.travelling) return std::nullopt;
-  const auto& first = wave.origins.front();
-  if (!scene.sources[static_cast<std::size_t>(first.source)].in_view) return Answer::enters_view;
+  if (comes_from_outside(scene, wave)) return Answer::enters_view;
   const auto judged = std::count_if(wave.origins.begin(), wave.origins.end(),
                                     [](const TruthOrigin& origin) { return origin.judged; });
   if (judged < static_cast<long>(wave.origins.size())) return std::nullopt;
@@ -134,12 +141,15 @@ TruthWave wave_of(const Scene& scene, int tube, int cycle, const std::vector<Mem
   wave.complete = true;
   double first = 1e9;
   double last = -1e9;
+  int entering = 0;
   for (const auto& member : members) {
+    const double entry = member.life->entry_min;
+    if (member.in_view && entry > 0 && entry < scene.times_min.back()) ++entering;
     if (member.in_view && !member.counts) wave.complete = false;
     if (!member.counts) continue;
     wave.nuclei.push_back(member.nucleus->number);
-    first = std::min(first, member.life->entry_min);
-    last = std::max(last, member.life->entry_min);
+    first = std::min(first, entry);
+    last = std::max(last, entry);
   }
   if (!scene.waves.together)
     wave.speed_um_per_min =
@@ -148,7 +158,7 @@ TruthWave wave_of(const Scene& scene, int tube, int cycle, const std::vector<Mem
   wave.travelling = !scene.waves.together && static_cast<int>(wave.nuclei.size()) >= few_nuclei &&
                     last - first > clear_spread * scene.waves.jitter_min;
   list_origins(scene, members, wave);
-  wave.answer = answer_of(scene, wave);
+  wave.answer = answer_of(scene, wave, entering);
   return wave;
 }
 

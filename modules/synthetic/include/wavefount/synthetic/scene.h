@@ -45,6 +45,9 @@ struct SceneNucleus {
   double elongation = 0;  ///< relative amplitude of the second harmonic of the outline
   double lobes = 0;       ///< relative amplitude of the third harmonic
   double texture = 0;     ///< relative amplitude of the brightness texture
+
+  /// Outline over that of a disc of the same radius, in a direction of the image.
+  double outline(double direction) const;
 };
 
 /// Where waves come from.
