@@ -94,6 +94,7 @@ std::vector<SceneRecipe> demo_recipes(const DemoOptions& options) {
                       : chosen_scenarios(options, options.seed + 7919 * round)[i % first.size()];
     if (round > 0) recipe.name.append("-").append(std::to_string(round + 1));
     apply(options, recipe);
+    check(recipe);
     recipes.push_back(recipe);
   }
   return recipes;

@@ -13,6 +13,8 @@ void require(bool held, const SceneRecipe& recipe, const std::string& what) {
   if (!held) throw Problem("scene " + recipe.name + " cannot be built: " + what + ".");
 }
 
+}  // namespace
+
 void check(const SceneRecipe& r) {
   require(r.frames >= 1 && r.frames <= 20000, r, "the number of frames must be 1 to 20000");
   require(r.interval_min >= 0.05 && r.interval_min <= 10, r,
@@ -28,6 +30,8 @@ void check(const SceneRecipe& r) {
       r.stamp_jitter >= 0 && r.stamp_jitter < 0.5 && r.dropped_share >= 0 && r.dropped_share < 0.5,
       r, "irregular stamps and dropped frames must stay below half");
 }
+
+namespace {
 
 std::vector<double> stamps(const SceneRecipe& recipe, RandomSequence& random) {
   std::vector<double> times;

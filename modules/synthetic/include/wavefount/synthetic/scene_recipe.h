@@ -61,6 +61,9 @@ struct SceneRecipe {
   double dropped_share = 0;  ///< share of frames that are missing
 };
 
+/// Throws Problem for a recipe outside its ranges.
+void check(const SceneRecipe& recipe);
+
 /// Draws a scene: places nuclei by a hard core process, runs the arrival field over them and gives
 /// each its interphases. The same recipe gives the same scene. Throws Problem for a recipe outside
 /// its ranges.
