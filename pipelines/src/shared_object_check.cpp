@@ -33,7 +33,10 @@ std::optional<std::string> fault_of_shared_object(const std::filesystem::path& f
     return "it is not a shared library for this machine";
   if (header.e_type != ET_DYN) return "it is not a shared library";
   const std::uint64_t table = std::uint64_t{header.e_phnum} * sizeof(Elf64_Phdr);
-  if (!lies_within(header.e_phoff, table, size)) return "it was cut short";
+  // The sections' table stands last: a library that lost its tail lost that first.
+  const std::uint64_t sections = std::uint64_t{header.e_shnum} * header.e_shentsize;
+  if (!lies_within(header.e_phoff, table, size) || !lies_within(header.e_shoff, sections, size))
+    return "it was cut short";
   std::vector<Elf64_Phdr> segments(header.e_phnum);
   in.seekg(static_cast<std::streamoff>(header.e_phoff));
   if (!in.read(reinterpret_cast<char*>(segments.data()), static_cast<std::streamsize>(table)))
