@@ -13,5 +13,6 @@ pkg_check_modules(TIFF4 REQUIRED IMPORTED_TARGET libtiff-4)
 pkg_check_modules(XLSXWRITER REQUIRED IMPORTED_TARGET xlsxwriter)
 pkg_check_modules(CAIRO REQUIRED IMPORTED_TARGET cairo)
 pkg_check_modules(XXHASH REQUIRED IMPORTED_TARGET libxxhash)
+pkg_check_modules(LIBPNG REQUIRED IMPORTED_TARGET libpng)
 
 include(WavefountPixels)
