@@ -12,6 +12,8 @@
 namespace wavefount::nuclei {
 namespace {
 
+/// The radius of a blob's scale may exceed that of its nucleus by blur and by half a scale.
+constexpr double widest_for_room = 1.5;
 /// A frame of pure texture must not stall the film; no field of nuclei holds as many.
 constexpr std::size_t most_blobs = 4000;
 /// The spread of a scale is read at this many places.
@@ -28,18 +30,24 @@ int scaled(double value, int step) {
   return static_cast<int>(std::lround(value / step));
 }
 
-/// Vertex of the parabola through three equidistant values, in steps, within half a step.
+/// Vertex of the parabola through three equidistant values, in steps, within half a step; 0 where
+/// one of them lies outside of the image.
 double vertex(double before, double here, double after) {
+  if (!std::isfinite(before) || !std::isfinite(after)) return 0;
   const double bend = before - 2 * here + after;
   return bend < 0 ? std::clamp(0.5 * (before - after) / bend, -0.5, 0.5) : 0.0;
 }
 
 class Search {
  public:
-  Search(const cv::Mat1f& excess, const cv::Mat1b& tubes, const Cytoplasm& cytoplasm,
-         const std::vector<BlobScale>& scales, const BlobThresholds& thresholds)
-      : tubes_(tubes), cytoplasm_(cytoplasm), space_(excess, scales), thresholds_(thresholds) {
-    pixel_ratio_ = pixel_noise_ratio(excess);
+  Search(const BlobField& field, const std::vector<BlobScale>& scales,
+         const BlobThresholds& thresholds)
+      : tubes_(field.tubes),
+        wall_distance_(field.wall_distance),
+        cytoplasm_(field.cytoplasm),
+        space_(field.excess, scales),
+        thresholds_(thresholds) {
+    pixel_ratio_ = pixel_noise_ratio(field.excess);
   }
 
   std::vector<Blob> run() {
@@ -212,7 +220,9 @@ class Search {
   /// Strongest first; a weaker one inside a stronger one, of whatever scale, is the same blob, and
   /// on its rim a ripple of its edge.
   std::vector<Blob> separated(std::vector<Blob> blobs) const {
-    std::erase_if(blobs, [&](const Blob& blob) { return blob.roundness < thresholds_.roundness; });
+    std::erase_if(blobs, [&](const Blob& blob) {
+      return blob.roundness < thresholds_.roundness || !has_room(blob);
+    });
     std::stable_sort(blobs.begin(), blobs.end(),
                      [](const Blob& a, const Blob& b) { return a.response > b.response; });
     std::vector<Blob> kept;
@@ -225,6 +235,13 @@ class Search {
     return kept;
   }
 
+  /// A nucleus lies inside its tube; the mask is cut a pixel short of the wall.
+  bool has_room(const Blob& blob) const {
+    const int x = static_cast<int>(std::lround(blob.x));
+    const int y = static_cast<int>(std::lround(blob.y));
+    return blob.radius <= widest_for_room * (static_cast<double>(wall_distance_(y, x)) + 2);
+  }
+
   static bool same_blob(const Blob& weaker, const Blob& stronger) {
     const double dx = weaker.x - stronger.x;
     const double dy = weaker.y - stronger.y;
@@ -235,6 +252,7 @@ class Search {
   }
 
   const cv::Mat1b& tubes_;
+  const cv::Mat1f& wall_distance_;
   const Cytoplasm& cytoplasm_;
   ScaleSpace space_;
   BlobThresholds thresholds_;
@@ -243,11 +261,10 @@ class Search {
 
 }  // namespace
 
-std::vector<Blob> find_blobs(const cv::Mat1f& excess, const cv::Mat1b& tubes,
-                             const Cytoplasm& cytoplasm, const std::vector<BlobScale>& scales,
+std::vector<Blob> find_blobs(const BlobField& field, const std::vector<BlobScale>& scales,
                              const BlobThresholds& thresholds) {
-  if (excess.empty() || scales.empty()) return {};
-  return Search(excess, tubes, cytoplasm, scales, thresholds).run();
+  if (field.excess.empty() || scales.empty()) return {};
+  return Search(field, scales, thresholds).run();
 }
 
 }  // namespace wavefount::nuclei

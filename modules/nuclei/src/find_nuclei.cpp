@@ -1,7 +1,11 @@
 #include "wavefount/nuclei/find_nuclei.h"
 
+#include <algorithm>
+#include <cmath>
+
 #include "wavefount/core/problem.h"
 #include "wavefount/nuclei/cytoplasm.h"
+#include "wavefount/nuclei/wall_glow.h"
 
 namespace wavefount::nuclei {
 namespace {
@@ -17,7 +21,8 @@ Sighting candidate_of(const Blob& blob, const TubeMask& tubes) {
   sighting.y_px = grid.y_px(blob.y);
   sighting.radius_px = blob.radius * grid.factor;
   sighting.detection_sigma = blob.sigma;
-  sighting.tube = std::max(0, tubes.tube_at(sighting.x_px, sighting.y_px));
+  sighting.tube = std::max(0, tubes.tube_at(static_cast<int>(std::lround(sighting.x_px)),
+                                            static_cast<int>(std::lround(sighting.y_px))));
   return sighting;
 }
 
@@ -36,9 +41,12 @@ Detection find_nuclei(const Image& reduced, const TubeMask& tubes, const CameraM
                                        settings.largest_radius_um / reduced_um);
   Detection detection;
   detection.noise = cytoplasm.typical_noise();
-  const cv::Mat1f excess = cytoplasm.excess(frame, tubes.pixels());
+  cv::Mat1f excess = cytoplasm.excess(frame, tubes.pixels());
+  const cv::Mat1f walls = wall_distance(tubes.pixels());
+  remove_wall_glow(excess, walls, settings.largest_radius_um / reduced_um,
+                   cytoplasm.typical_noise());
   for (const Blob& blob :
-       find_blobs(excess, tubes.pixels(), cytoplasm, scales, settings.thresholds))
+       find_blobs({excess, tubes.pixels(), walls, cytoplasm}, scales, settings.thresholds))
     detection.candidates.push_back(candidate_of(blob, tubes));
   return detection;
 }

@@ -20,11 +20,16 @@ constexpr double smoothing_a_noise = 2.8;
 constexpr double most_smoothing = 0.3;
 /// A ring wants this many pixels to be a level.
 constexpr int fewest_ring_pixels = 24;
+/// Ring pixels that are enough for the level of an outline, and for that of a brightness.
+constexpr double outline_ring_pixels = 300;
+constexpr double brightness_ring_pixels = 1500;
+/// A candidate whose outline has its place and radius to this share needs no second round.
+constexpr double settled_share = 0.1;
 /// An outline with deeper dents than this is a network, not a nucleus.
 constexpr double least_solid = 0.7;
-/// A disc under any blur that leaves it a disc falls more steeply than this; a Gaussian cloud has
-/// 0.575.
-constexpr double softest_edge = 0.46;
+/// A wide nucleus falls more steeply than this even out of focus (a ball has 0.27); a Gaussian
+/// cloud has 0.575, slow unevenness of the cytoplasm 0.4 to 0.5.
+constexpr double softest_edge = 0.37;
 /// A central difference over two pixels, taken up to half a pixel off the contour, adds this much
 /// to the squared blur that the slope tells.
 constexpr double sampling_blur_px2 = 1.0 / 3 + 1.0 / 12;
@@ -53,31 +58,48 @@ bool belongs_elsewhere(const std::vector<Body>& others, const Body& own, double 
   });
 }
 
+/// Pixels of an image within `reach` of a place, in a box held to the image.
+struct Box {
+  Box(const Image& image, const Body& body, double reach)
+      : x0(std::max(0, static_cast<int>(std::ceil(body.x - reach)))),
+        x1(std::min(image_width(image) - 1, static_cast<int>(std::floor(body.x + reach)))),
+        y0(std::max(0, static_cast<int>(std::ceil(body.y - reach)))),
+        y1(std::min(image_height(image) - 1, static_cast<int>(std::floor(body.y + reach)))) {}
+  int x0, x1, y0, y1;  ///< inclusive
+};
+
+std::vector<Body> within(const std::vector<Body>& others, const Body& body, double reach) {
+  std::vector<Body> near;
+  for (const Body& other : others)
+    if (squared(other.x - body.x) + squared(other.y - body.y) <
+        squared(reach + 1.2 * other.radius + other.soft))
+      near.push_back(other);
+  return near;
+}
+
 /// Level of the ring around a body, without other bodies, walls and outside; widened where little
-/// of it is free.
+/// of it is free. No more than about `most_values` of its pixels are read.
 LocalLevel ring_level(const Image& image, const TubeMask& tubes, const Body& body,
-                      const std::vector<Body>& others) {
+                      const std::vector<Body>& others, double most_values) {
   const double inner = std::max(1.4 * body.radius, body.radius + body.soft) + 1;
-  double outer = inner + std::max(0.6 * body.radius, 4.0);
-  const int width = image_width(image);
-  const int height = image_height(image);
+  const double step = std::max(0.6 * body.radius, 4.0);
   const float* pixels = image.GetBufferPointer();
   std::vector<float> values;
-  for (int widening = 0; widening < 4; ++widening, outer += std::max(0.6 * body.radius, 4.0)) {
+  for (double outer = inner + step; outer < inner + 4.5 * step; outer += step) {
     values.clear();
-    const int y0 = std::max(0, static_cast<int>(std::ceil(body.y - outer)));
-    const int y1 = std::min(height - 1, static_cast<int>(body.y + outer));
-    const int x0 = std::max(0, static_cast<int>(std::ceil(body.x - outer)));
-    const int x1 = std::min(width - 1, static_cast<int>(body.x + outer));
-    for (int y = y0; y <= y1; ++y) {
-      for (int x = x0; x <= x1; ++x) {
+    const auto near = within(others, body, outer);
+    const Box box(image, body, outer);
+    const double area = std::numbers::pi * (squared(outer) - squared(inner));
+    const int stride = std::max(1, static_cast<int>(std::sqrt(area / most_values)));
+    for (int y = box.y0; y <= box.y1; y += stride) {
+      const float* row = pixels + static_cast<std::ptrdiff_t>(y) * image_width(image);
+      for (int x = box.x0; x <= box.x1; x += stride) {
         const double distance = squared(x - body.x) + squared(y - body.y);
         if (distance < inner * inner || distance > outer * outer) continue;
         if (tubes.tube_at(x, y) != body.tube) continue;
-        if (std::any_of(others.begin(), others.end(),
-                        [&](const Body& other) { return reaches(other, x, y, 1.2); }))
-          continue;
-        values.push_back(pixels[static_cast<std::ptrdiff_t>(y) * width + x]);
+        if (std::none_of(near.begin(), near.end(),
+                         [&](const Body& other) { return reaches(other, x, y, 1.2); }))
+          values.push_back(row[x]);
       }
     }
     if (static_cast<int>(values.size()) >= fewest_ring_pixels) break;
@@ -99,10 +121,11 @@ class Cluster {
   void outline(std::vector<Sighting>& sightings) {
     open_window();
     grow();
-    adopt_regions();
+    const bool settled = adopt_regions();
     if (bodies_.empty()) return;
-    grow();
-    for (std::size_t i = 0; i < bodies_.size(); ++i) measure(i, sightings);
+    if (!settled) grow();
+    const auto boxes = boxes_of(labels_, bodies_.size());
+    for (std::size_t i = 0; i < bodies_.size(); ++i) measure(i, boxes[i], sightings);
   }
 
  private:
@@ -112,7 +135,7 @@ class Cluster {
     double x1 = 0;
     double y1 = 0;
     for (const Body& body : bodies_) {
-      const double reach = 2.5 * body.radius + 4;
+      const double reach = 2 * body.radius + 3;
       x0 = std::min(x0, body.x - reach);
       x1 = std::max(x1, body.x + reach);
       y0 = std::min(y0, body.y - reach);
@@ -139,7 +162,8 @@ class Cluster {
     cytoplasm_.clear();
     for (std::size_t i = 0; i < bodies_.size(); ++i)
       cytoplasm_.push_back(
-          ring_level(frame_.sharpest, frame_.tubes, bodies_[i], others_than(i)).mean);
+          ring_level(frame_.sharpest, frame_.tubes, bodies_[i], others_than(i), outline_ring_pixels)
+              .mean);
     smoothing_ = wanted_smoothing(sharp);
     // A sub-window: the filter takes the pixels beyond it from the frame.
     cv::GaussianBlur(sharp(window_), smooth_, cv::Size(0, 0), smoothing_, smoothing_,
@@ -201,11 +225,15 @@ class Cluster {
     return static_cast<double>(*middle);
   }
 
-  /// The first round's regions become the bodies of the second.
-  void adopt_regions() {
+  /// The first round's regions become the bodies of the second. True when a second would change
+  /// nothing: one body, which lies where it was thought to.
+  bool adopt_regions() {
+    bool settled = bodies_.size() == 1;
+    const auto boxes = boxes_of(labels_, bodies_.size());
     std::vector<Body> adopted;
     for (std::size_t i = 0; i < bodies_.size(); ++i) {
-      const RegionShape shape = shape_of(labels_, static_cast<int>(i), smooth_, seeds_[i].half);
+      const RegionShape shape =
+          shape_of(labels_, static_cast<int>(i), boxes[i], smooth_, seeds_[i].half);
       if (shape.pixels == 0) continue;
       Body body = bodies_[i];
       body.x = window_.x + shape.x;
@@ -213,9 +241,13 @@ class Cluster {
       body.radius = std::sqrt(std::max(shape.area, 1.0) / std::numbers::pi);
       body.soft =
           std::clamp(2.5 * edge_blur(shape, seeds_[i].peak), 2.0, std::max(2.0, body.radius));
+      settled =
+          settled && std::abs(body.radius / bodies_[i].radius - 1) < settled_share &&
+          std::hypot(body.x - bodies_[i].x, body.y - bodies_[i].y) < settled_share * body.radius;
       adopted.push_back(body);
     }
     bodies_ = std::move(adopted);
+    return settled;
   }
 
   /// Blur as the slope across the contour tells, pixels.
@@ -225,9 +257,9 @@ class Cluster {
     return std::sqrt(std::max(told * told - sampling_blur_px2, 0.04));
   }
 
-  void measure(std::size_t index, std::vector<Sighting>& sightings) const {
+  void measure(std::size_t index, const cv::Rect& box, std::vector<Sighting>& sightings) const {
     const Seed& seed = seeds_[index];
-    const RegionShape shape = shape_of(labels_, static_cast<int>(index), smooth_, seed.half);
+    const RegionShape shape = shape_of(labels_, static_cast<int>(index), box, smooth_, seed.half);
     if (shape.pixels == 0 || shape.slope <= 0) return;
     if (shape.slenderness > limits_.slenderest || leaks(shape, seed)) return;
     if (solidity(shape.runs) < least_solid) return;
@@ -283,7 +315,7 @@ class Cluster {
     body.x = sighting.x_px;
     body.y = sighting.y_px;
     body.radius = sighting.radius_px;
-    const LocalLevel ring = ring_level(image, frame_.tubes, body, others);
+    const LocalLevel ring = ring_level(image, frame_.tubes, body, others, brightness_ring_pixels);
     const float* pixels = image.GetBufferPointer();
     const int width = image_width(image);
     double sum = 0;
@@ -312,21 +344,18 @@ class Cluster {
 
   double light_within(double reach, const Body& body, const std::vector<Body>& others,
                       double cytoplasm) const {
-    const int width = image_width(frame_.pixels);
-    const int height = image_height(frame_.pixels);
     const float* pixels = frame_.pixels.GetBufferPointer();
+    const int width = image_width(frame_.pixels);
+    const auto near = within(others, body, reach);
+    const Box box(frame_.pixels, body, reach);
     double light = 0;
-    const int y0 = std::max(0, static_cast<int>(std::ceil(body.y - reach)));
-    const int y1 = std::min(height - 1, static_cast<int>(body.y + reach));
-    const int x0 = std::max(0, static_cast<int>(std::ceil(body.x - reach)));
-    const int x1 = std::min(width - 1, static_cast<int>(body.x + reach));
-    for (int y = y0; y <= y1; ++y) {
-      for (int x = x0; x <= x1; ++x) {
+    for (int y = box.y0; y <= box.y1; ++y) {
+      const float* row = pixels + static_cast<std::ptrdiff_t>(y) * width;
+      for (int x = box.x0; x <= box.x1; ++x) {
         if (squared(x - body.x) + squared(y - body.y) > reach * reach) continue;
         if (frame_.tubes.tube_at(x, y) != body.tube) continue;
-        if (belongs_elsewhere(others, body, x, y)) continue;
-        light +=
-            static_cast<double>(pixels[static_cast<std::ptrdiff_t>(y) * width + x]) - cytoplasm;
+        if (belongs_elsewhere(near, body, x, y)) continue;
+        light += static_cast<double>(row[x]) - cytoplasm;
       }
     }
     return light;
@@ -355,7 +384,7 @@ std::vector<std::vector<std::size_t>> clusters_of(const std::vector<Body>& bodie
   };
   for (std::size_t i = 0; i < bodies.size(); ++i) {
     for (std::size_t j = 0; j < i; ++j) {
-      const double reach = 1.4 * (bodies[i].radius + bodies[j].radius) + 2;
+      const double reach = 1.2 * (bodies[i].radius + bodies[j].radius) + 2;
       if (squared(bodies[i].x - bodies[j].x) + squared(bodies[i].y - bodies[j].y) > reach * reach)
         continue;
       const std::size_t a = find(i);

@@ -32,7 +32,7 @@ StepDeclaration OutlineNuclei::declaration() const {
        1000,
        "40",
        {},
-       "An outline of a larger radius is dropped; 40 leaves room above the largest nucleus that is "
+       "An outline of a larger radius is dropped; 30 leaves room above the largest nucleus that is "
        "looked for."},
       {"significance",
        ParameterKind::number,

@@ -47,7 +47,10 @@ class Growth {
   cv::Mat1i run() {
     if (seeds_.size() > 1) measure_depth();
     plant();
-    flood();
+    if (seeds_.size() == 1)
+      flood_alone();
+    else
+      flood();
     fill_holes();
     return labels_;
   }
@@ -81,7 +84,6 @@ class Growth {
   }
 
   float key(int x, int y, const Seed& seed) const {
-    if (seeds_.size() == 1) return 0;
     const double floor = seed.half - seed.peak / 2;
     const double level = (static_cast<double>(image_(y, x)) - floor) / std::max(seed.peak, 1e-12);
     return depth_(y, x) + static_cast<float>(std::min(level, 1.2));
@@ -100,9 +102,15 @@ class Growth {
         labels_(y, x) = static_cast<int>(i);
       });
     }
-    for (int y = 0; y < labels_.rows; ++y)
-      for (int x = 0; x < labels_.cols; ++x)
-        if (labels_(y, x) >= 0) spread(x, y, labels_(y, x));
+    for (int y = 0; y < labels_.rows; ++y) {
+      for (int x = 0; x < labels_.cols; ++x) {
+        if (labels_(y, x) < 0) continue;
+        if (seeds_.size() == 1)
+          open_.emplace_back(x, y);
+        else
+          spread(x, y, labels_(y, x));
+      }
+    }
   }
 
   void spread(int x, int y, int label) {
@@ -115,6 +123,25 @@ class Growth {
       if (static_cast<double>(image_(to_y, to_x)) < seed.half) continue;
       if (squared(to_x - seed.x) + squared(to_y - seed.y) > squared(reach_of(seed))) continue;
       fronts_.push({key(to_x, to_y, seed), order_++, to_x, to_y, label});
+    }
+  }
+
+  /// Without a rival there is no order to keep.
+  void flood_alone() {
+    const Seed& seed = seeds_.front();
+    const double reach = squared(reach_of(seed));
+    while (!open_.empty()) {
+      const cv::Point from = open_.back();
+      open_.pop_back();
+      for (int i = 0; i < 4; ++i) {
+        const int x = from.x + steps_x[i];
+        const int y = from.y + steps_y[i];
+        if (x < 0 || y < 0 || x >= labels_.cols || y >= labels_.rows) continue;
+        if (labels_(y, x) != none || static_cast<double>(image_(y, x)) < seed.half) continue;
+        if (squared(x - seed.x) + squared(y - seed.y) > reach) continue;
+        labels_(y, x) = 0;
+        open_.emplace_back(x, y);
+      }
     }
   }
 
@@ -131,45 +158,38 @@ class Growth {
 
   /// Gives each hole inside one nucleus to it; a gap that several enclose is cytoplasm.
   void fill_holes() {
-    cv::Mat1b seen(labels_.size(), static_cast<unsigned char>(0));
-    for (int y = 0; y < labels_.rows; ++y) {
-      for (int x = 0; x < labels_.cols; ++x) {
-        if (labels_(y, x) != none || seen(y, x) != 0) continue;
-        const Gap gap = gap_from(x, y, seen);
-        if (gap.open || gap.lowest != gap.highest) continue;
-        for (const cv::Point& at : gap.pixels) labels_(at) = gap.lowest;
-      }
-    }
+    const auto boxes = boxes_of(labels_, seeds_.size());
+    for (std::size_t i = 0; i < boxes.size(); ++i)
+      if (boxes[i].width > 2 && boxes[i].height > 2) fill_holes(static_cast<int>(i), boxes[i]);
   }
 
-  struct Gap {
-    std::vector<cv::Point> pixels;
-    bool open = false;  ///< reaches the window's rim
-    int lowest = std::numeric_limits<int>::max();
-    int highest = none;  ///< labels around it
-  };
-
-  Gap gap_from(int x0, int y0, cv::Mat1b& seen) const {
-    Gap gap;
-    gap.pixels.emplace_back(x0, y0);
-    seen(y0, x0) = 1;
-    for (std::size_t next = 0; next < gap.pixels.size(); ++next) {
-      const cv::Point from = gap.pixels[next];
-      for (int i = 0; i < 4; ++i) {
-        const int x = from.x + steps_x[i];
-        const int y = from.y + steps_y[i];
-        if (x < 0 || y < 0 || x >= labels_.cols || y >= labels_.rows) {
-          gap.open = true;
-        } else if (labels_(y, x) != none) {
-          gap.lowest = std::min(gap.lowest, labels_(y, x));
-          gap.highest = std::max(gap.highest, labels_(y, x));
-        } else if (seen(y, x) == 0) {
-          seen(y, x) = 1;
-          gap.pixels.emplace_back(x, y);
-        }
-      }
+  /// What is free inside the label's box and cannot be reached from the box's rim is a hole.
+  void fill_holes(int label, const cv::Rect& box) {
+    cv::Mat1i inner = labels_(box);
+    cv::Mat1b seen(inner.size(), static_cast<unsigned char>(0));
+    open_.clear();
+    const auto reach = [&](int x, int y) {
+      if (x < 0 || y < 0 || x >= inner.cols || y >= inner.rows) return;
+      if (inner(y, x) == label || seen(y, x) != 0) return;
+      seen(y, x) = 1;
+      open_.emplace_back(x, y);
+    };
+    for (int x = 0; x < inner.cols; ++x) {
+      reach(x, 0);
+      reach(x, inner.rows - 1);
     }
-    return gap;
+    for (int y = 0; y < inner.rows; ++y) {
+      reach(0, y);
+      reach(inner.cols - 1, y);
+    }
+    while (!open_.empty()) {
+      const cv::Point from = open_.back();
+      open_.pop_back();
+      for (int i = 0; i < 4; ++i) reach(from.x + steps_x[i], from.y + steps_y[i]);
+    }
+    for (int y = 0; y < inner.rows; ++y)
+      for (int x = 0; x < inner.cols; ++x)
+        if (inner(y, x) == none && seen(y, x) == 0) inner(y, x) = label;
   }
 
   const cv::Mat1f& image_;
@@ -178,9 +198,34 @@ class Growth {
   cv::Mat1f depth_;
   std::priority_queue<Front> fronts_;
   std::uint32_t order_ = 0;
+  std::vector<cv::Point> open_;
 };
 
 }  // namespace
+
+std::vector<cv::Rect> boxes_of(const cv::Mat1i& labels, std::size_t count) {
+  struct Box {
+    int x0 = std::numeric_limits<int>::max(), y0 = 0, x1 = -1, y1 = -1;
+  };
+  std::vector<Box> boxes(count);
+  for (int y = 0; y < labels.rows; ++y) {
+    const int* row = labels[y];
+    for (int x = 0; x < labels.cols; ++x) {
+      if (row[x] < 0) continue;
+      Box& box = boxes[static_cast<std::size_t>(row[x])];
+      if (box.y1 < 0) box.y0 = y;
+      box.y1 = y;
+      box.x0 = std::min(box.x0, x);
+      box.x1 = std::max(box.x1, x);
+    }
+  }
+  std::vector<cv::Rect> rects;
+  for (const Box& box : boxes)
+    rects.push_back(box.y1 < 0
+                        ? cv::Rect()
+                        : cv::Rect(box.x0, box.y0, box.x1 - box.x0 + 1, box.y1 - box.y0 + 1));
+  return rects;
+}
 
 cv::Mat1i grow_regions(const cv::Mat1f& image, const std::vector<Seed>& seeds) {
   return Growth(image, seeds).run();

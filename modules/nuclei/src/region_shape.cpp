@@ -28,8 +28,8 @@ struct Surrounding {
 
 class Walk {
  public:
-  Walk(const cv::Mat1i& labels, int label, const cv::Mat1f& image, double half)
-      : labels_(labels), label_(label), image_(image), half_(half) {}
+  Walk(const cv::Mat1i& labels, int label, const cv::Rect& box, const cv::Mat1f& image, double half)
+      : labels_(labels), label_(label), box_(box), image_(image), half_(half) {}
 
   RegionShape run() {
     collect();
@@ -43,12 +43,13 @@ class Walk {
   void collect() {
     double sum_x = 0;
     double sum_y = 0;
-    for (int y = 0; y < labels_.rows; ++y) {
+    const int right = box_.x + box_.width;
+    for (int y = box_.y; y < box_.y + box_.height; ++y) {
       const int* row = labels_[y];
-      for (int x = 0; x < labels_.cols; ++x) {
+      for (int x = box_.x; x < right; ++x) {
         if (row[x] != label_) continue;
         const int start = x;
-        while (x < labels_.cols && row[x] == label_) ++x;
+        while (x < right && row[x] == label_) ++x;
         const int count = x - start;
         shape_.runs.push_back({static_cast<std::uint16_t>(y), static_cast<std::uint16_t>(start),
                                static_cast<std::uint16_t>(x)});
@@ -104,18 +105,14 @@ class Walk {
   /// Adds up the covered shares of the pixels inside and just outside of the contour, and how steep
   /// the image is where the contour passes.
   void follow_edge() {
-    const int y0 = std::max(0, shape_.runs.front().y - 1);
-    const int y1 = std::min(labels_.rows - 1, shape_.runs.back().y + 1);
-    int x0 = labels_.cols;
-    int x1 = 0;
-    for (const Run& run : shape_.runs) {
-      x0 = std::min(x0, run.x0 - 1);
-      x1 = std::max(x1, static_cast<int>(run.x1));
-    }
+    const int y0 = std::max(0, box_.y - 1);
+    const int y1 = std::min(labels_.rows - 1, box_.y + box_.height);
+    const int x0 = std::max(0, box_.x - 1);
+    const int x1 = std::min(labels_.cols - 1, box_.x + box_.width);
     double slopes = 0;
     int crossed = 0;
     for (int y = y0; y <= y1; ++y) {
-      for (int x = std::max(x0, 0); x <= std::min(x1, labels_.cols - 1); ++x) {
+      for (int x = x0; x <= x1; ++x) {
         const int label = labels_(y, x);
         if (label != label_ && label >= 0) continue;
         const Surrounding near = around(x, y);
@@ -151,6 +148,7 @@ class Walk {
 
   const cv::Mat1i& labels_;
   int label_;
+  cv::Rect box_;
   const cv::Mat1f& image_;
   double half_;
   RegionShape shape_;
@@ -158,8 +156,9 @@ class Walk {
 
 }  // namespace
 
-RegionShape shape_of(const cv::Mat1i& labels, int label, const cv::Mat1f& image, double half) {
-  return Walk(labels, label, image, half).run();
+RegionShape shape_of(const cv::Mat1i& labels, int label, const cv::Rect& box,
+                     const cv::Mat1f& image, double half) {
+  return Walk(labels, label, box, image, half).run();
 }
 
 double solidity(const std::vector<Run>& runs) {

@@ -65,11 +65,4 @@ TubeMask::TubeMask(const Tubes& tubes, const ReducedGrid& grid, double pixel_um,
   cv::erode(pixels_, pixels_, cv::Mat());
 }
 
-int TubeMask::tube_at(double x_px, double y_px) const {
-  const auto column = std::lround(grid_.column(x_px));
-  const auto row = std::lround(grid_.row(y_px));
-  if (column < 0 || row < 0 || column >= grid_.width || row >= grid_.height) return -1;
-  return pixels_(static_cast<int>(row), static_cast<int>(column)) - 1;
-}
-
 }  // namespace wavefount::nuclei

@@ -23,14 +23,21 @@ struct BlobThresholds {
   double roundness = 0.2;  ///< lowest ratio of the Hessian's eigenvalues
 };
 
+/// What blobs are looked for in; all of one size.
+struct BlobField {
+  const cv::Mat1f& excess;         ///< above the cytoplasm, counts, 0 outside of the tubes
+  const cv::Mat1b& tubes;          ///< 0 outside
+  const cv::Mat1f& wall_distance;  ///< pixels
+  const Cytoplasm& cytoplasm;      ///< for the noise
+};
+
 /// Local maxima over place and scale of the scale-normalised Laplacian (Lindeberg 1998), strongest
-/// first, none inside another. `excess` as Cytoplasm::excess gives it, `tubes` of the same size.
+/// first, none inside another and none wider than its place in the tube has room for.
 ///
 /// The noise of each scale is the camera's, carried through the filter, times the ratio by which
 /// the response between the candidates spreads wider (texture of the cytoplasm, a camera model that
 /// is off): one threshold is one false-alarm rate at any exposure and in any extract.
-std::vector<Blob> find_blobs(const cv::Mat1f& excess, const cv::Mat1b& tubes,
-                             const Cytoplasm& cytoplasm, const std::vector<BlobScale>& scales,
+std::vector<Blob> find_blobs(const BlobField& field, const std::vector<BlobScale>& scales,
                              const BlobThresholds& thresholds);
 
 }  // namespace wavefount::nuclei

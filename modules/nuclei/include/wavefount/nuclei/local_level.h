@@ -10,8 +10,9 @@ struct LocalLevel {
   int count = 0;
 };
 
-/// Mean of what lies within three robust standard deviations of the median: near the mean's
-/// efficiency for noise, deaf to a neighbour or a speck that reaches in. Reorders `values`.
+/// Mean of what lies within three standard deviations (from the lower quartile) of the median: near
+/// the mean's efficiency for noise, deaf to a neighbour or a speck that reaches in. Reorders
+/// `values`.
 LocalLevel clipped_mean(std::vector<float>& values);
 
 }  // namespace wavefount::nuclei

@@ -20,4 +20,7 @@ struct Seed {
 /// there is none at the neck. Holes are filled.
 cv::Mat1i grow_regions(const cv::Mat1f& image, const std::vector<Seed>& seeds);
 
+/// The smallest box around the pixels of each label from 0 to count - 1; empty for an absent one.
+std::vector<cv::Rect> boxes_of(const cv::Mat1i& labels, std::size_t count);
+
 }  // namespace wavefount::nuclei

@@ -19,15 +19,17 @@ struct RegionShape {
   std::vector<Run> runs;   ///< of the window, not of the frame
 };
 
-/// Shape of the pixels that carry `label`. `image`: what the region was grown on; `half`: the level
-/// of its contour.
-RegionShape shape_of(const cv::Mat1i& labels, int label, const cv::Mat1f& image, double half);
+/// Shape of the pixels that carry `label`, all of which lie in `box`. `image`: what the region was
+/// grown on; `half`: the level of its contour.
+RegionShape shape_of(const cv::Mat1i& labels, int label, const cv::Rect& box,
+                     const cv::Mat1f& image, double half);
 
 /// Share of the convex hull that the runs fill, 1 when they have no dent.
 double solidity(const std::vector<Run>& runs);
 
-/// Joins regions that are one nucleus: bright all the way across their common border, and without a
-/// neck. `seeds` gives the levels; joined labels take the lower index.
+/// Joins regions that are one nucleus: bright all the way across their common border and without a
+/// neck, or a small patch mostly surrounded by another. `seeds` gives the levels; a joined pair
+/// takes the lower index, a patch its host's.
 void join_regions(cv::Mat1i& labels, const cv::Mat1f& image, const std::vector<Seed>& seeds,
                   double largest_radius);
 

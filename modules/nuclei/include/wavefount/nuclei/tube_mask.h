@@ -36,7 +36,14 @@ class TubeMask {
   /// CV_8UC1, 0 outside, else the tube's index + 1.
   const cv::Mat1b& pixels() const { return pixels_; }
   /// Index of the tube at a full-size pixel, -1 outside of all or of the grid.
-  int tube_at(double x_px, double y_px) const;
+  int tube_at(int x_px, int y_px) const {
+    const int x = x_px - grid_.left;
+    const int y = y_px - grid_.top;
+    if (x < 0 || y < 0) return -1;
+    const int column = x / grid_.factor;
+    const int row = y / grid_.factor;
+    return column < grid_.width && row < grid_.height ? pixels_(row, column) - 1 : -1;
+  }
 
  private:
   ReducedGrid grid_;
