@@ -85,10 +85,22 @@ SceneLife draw_life(const SceneRecipe& recipe, RandomSequence& random) {
   return life;
 }
 
+/// How far a nucleus may step from home without running into a neighbour that does the same.
+double room_um(const SceneRecipe& recipe, const Scene& scene, const SceneNucleus& nucleus) {
+  double room = 2.2 * recipe.relocate_um;
+  for (const auto& other : scene.nuclei) {
+    if (other.tube != nucleus.tube || other.number == nucleus.number) continue;
+    const double apart =
+        std::hypot(other.along_um - nucleus.along_um, other.across_um - nucleus.across_um);
+    // A step of this size each way is longer by the square root of two on the diagonal.
+    room = std::min(room, (apart - 2 * recipe.radius_um) / 2 / std::sqrt(2.0));
+  }
+  return std::max(room, 0.0);
+}
+
 /// Step between interphases, kept away from the walls.
 Home relocated(const SceneRecipe& recipe, const Tube& tube, const SceneNucleus& nucleus,
-               RandomSequence& random) {
-  const double reach = 2.2 * recipe.relocate_um;
+               double reach, RandomSequence& random) {
   const auto step = [&] { return std::clamp(recipe.relocate_um * random.normal(), -reach, reach); };
   const double rim = recipe.radius_um + 5;
   const double half = tube.width_um / 2 - rim;
@@ -121,6 +133,7 @@ class Scheduler {
     const auto& tube = scene_.tubes[static_cast<std::size_t>(nucleus.tube)];
     int cycle = first_cycle(nucleus);
     double before = entry(nucleus, cycle - 1);
+    const double room = room_um(recipe_, scene_, nucleus);
     for (;; ++cycle) {
       const double formed =
           before +
@@ -130,7 +143,7 @@ class Scheduler {
       life.cycle = cycle;
       life.formed_min = formed;
       life.entry_min = std::max(entry(nucleus, cycle), formed + 4);
-      set_motion(recipe_, tube, relocated(recipe_, tube, nucleus, random_), life);
+      set_motion(recipe_, tube, relocated(recipe_, tube, nucleus, room, random_), life);
       nucleus.lives.push_back(life);
       before = life.entry_min;
       if (scene_.waves.arrest && cycle >= scene_.waves.arrest_cycle) break;
