@@ -236,6 +236,17 @@ TEST(LinkNuclei, DebrisIsKeptOnRequestAndInShortFilms) {
   EXPECT_EQ(linked.report.debris, 0);
 }
 
+TEST(LinkNuclei, EmptyTubeHoldsNoNucleiButOnesThatChangeStay) {
+  HandFilm made(100);
+  for (const double x : {100.0, 300.0, 480.0}) made.see(0, 100, sighting(x, 50));
+  for (int i = 0; i < 100; ++i)
+    made.see(i, i + 1, sighting(700, 50, 300 * (1 - std::exp(-(i + 10) / 30.0))));
+  const auto linked = made.linked();
+  EXPECT_EQ(linked.report.debris, 3);
+  ASSERT_EQ(linked.nuclei.nuclei.size(), 1u);
+  EXPECT_NEAR(linked.nuclei.nuclei[0].points[0].x_um, 700, 1);
+}
+
 TEST(LinkNuclei, OrderOfSightingsChangesNothing) {
   PointFilmPlan plan;
   plan.seed = 4;

@@ -19,8 +19,9 @@ std::vector<Chain> chains_of(const FilmDetections& film, const std::vector<Segme
 /// All detections of a chain by time.
 std::vector<int> detections_of(const std::vector<Segment>& segments, const Chain& chain);
 
-/// By chain: static debris, which neither fills nor empties while other nuclei cycle. Nothing is
-/// debris in a film too short to see whole interphases of several nuclei.
+/// By chain: static debris, which neither fills nor empties while other nuclei cycle, or, where
+/// nothing cycles for longer than a cycle takes, does not change at all. Nothing is debris in a
+/// film too short to tell.
 std::vector<bool> find_debris(const FilmDetections& film, const std::vector<Segment>& segments,
                               const Lineage& lineage, const std::vector<Chain>& chains);
 

@@ -18,6 +18,11 @@ constexpr int gone_steps = 5;
 /// which a thing is static.
 constexpr double static_share = 0.5;
 
+/// Where nothing cycles in this time, longer than cycles of extract and embryos take, a thing must
+/// have changed by this much (natural logarithm) in brightness or area to be taken for a nucleus.
+constexpr double silent_min = 75;
+constexpr double silent_change = 0.15;
+
 struct Cycling {
   std::vector<double> durations_min;  ///< of whole interphases
   std::vector<double> ranges;         ///< of log brightness within them
@@ -68,10 +73,50 @@ double windowed_range(const FilmDetections& film, const std::vector<int>& detect
   return median(std::move(ranges));
 }
 
+/// Largest difference between the median logarithms of the three thirds of a series.
+double change_of_thirds(const FilmDetections& film, const std::vector<int>& detections,
+                        double Detection::*quantity) {
+  std::vector<double> medians;
+  for (std::size_t third = 0; third < 3; ++third) {
+    std::vector<double> values;
+    for (std::size_t i = third * detections.size() / 3; i < (third + 1) * detections.size() / 3;
+         ++i)
+      values.push_back(log_ratio(film.all[detections[i]].*quantity, 1));
+    medians.push_back(median(std::move(values)));
+  }
+  const auto [least, most] = std::minmax_element(medians.begin(), medians.end());
+  return *most - *least;
+}
+
+bool lasts(const FilmDetections& film, const std::vector<int>& detections, double minutes) {
+  return film.time_of(detections.back()) - film.time_of(detections.front()) >= minutes &&
+         film.all[detections.back()].step + gone_steps >= film.steps();
+}
+
+/// In a film without a single mitosis: what neither fills nor grows nor fades for longer than a
+/// cycle takes.
+std::vector<bool> find_still(const FilmDetections& film, const std::vector<Segment>& segments,
+                             const std::vector<Chain>& chains) {
+  std::vector<bool> still(chains.size(), false);
+  for (std::size_t i = 0; i < chains.size(); ++i) {
+    const auto detections = detections_of(segments, chains[i]);
+    still[i] = lasts(film, detections, silent_min) &&
+               change_of_thirds(film, detections, &Detection::brightness) < silent_change &&
+               change_of_thirds(film, detections, &Detection::area_um2) < silent_change;
+  }
+  return still;
+}
+
+bool any_mitosis(const Lineage& lineage) {
+  return std::any_of(lineage.mitosis_min.begin(), lineage.mitosis_min.end(),
+                     [](double minutes) { return minutes > 0; });
+}
+
 }  // namespace
 
 std::vector<bool> find_debris(const FilmDetections& film, const std::vector<Segment>& segments,
                               const Lineage& lineage, const std::vector<Chain>& chains) {
+  if (!any_mitosis(lineage)) return find_still(film, segments, chains);
   std::vector<bool> debris(chains.size(), false);
   const auto cycling = cycling_of(film, segments, lineage, chains);
   if (cycling.durations_min.size() < fewest_interphases || cycling.nuclei < fewest_cycling)
@@ -84,8 +129,7 @@ std::vector<bool> find_debris(const FilmDetections& film, const std::vector<Segm
                                     [&](int segment) { return lineage.mitosis_min[segment] > 0; });
     if (cycled) continue;
     const auto detections = detections_of(segments, chains[i]);
-    if (film.time_of(detections.back()) - film.time_of(detections.front()) < longest) continue;
-    if (film.all[detections.back()].step + gone_steps < film.steps()) continue;
+    if (!lasts(film, detections, longest)) continue;
     debris[i] = windowed_range(film, detections, window) < least_range;
   }
   return debris;

@@ -46,7 +46,7 @@ class LinkNuclei : public AcquisitionStep {
          {"drop", "keep"},
          "What to do with static bright things that neither fill nor empty while nuclei around "
          "them cycle; dropped, since they would pass for nuclei that never enter mitosis."},
-        {"mitosis-min",
+        {"mitosis_min",
          ParameterKind::number,
          "min",
          0.1,
@@ -55,7 +55,7 @@ class LinkNuclei : public AcquisitionStep {
          {},
          "Expected time between a nucleus' loss and its re-formation; left empty it starts from 10 "
          "minutes and follows the film's own mitoses."},
-        {"reformation-um",
+        {"reformation_um",
          ParameterKind::number,
          "um",
          0.1,
@@ -72,8 +72,8 @@ class LinkNuclei : public AcquisitionStep {
     LinkSettings settings;
     settings.divisions = parameters().yes("divisions");
     settings.drop_debris = parameters().text("debris") == "drop";
-    settings.mitosis_min = parameters().optional_number("mitosis-min");
-    settings.reformation_um = parameters().optional_number("reformation-um");
+    settings.mitosis_min = parameters().optional_number("mitosis_min");
+    settings.reformation_um = parameters().optional_number("reformation_um");
     auto linked = link_nuclei(records.get<FilmDescription>(), records.get<Observations>(),
                               records.get<Tube>(), records.get<Drift>(), settings);
     if (work.messages != nullptr) tell(linked, *work.messages);
