@@ -3,6 +3,7 @@
 #include <chrono>
 #include <cmath>
 #include <cstdio>
+#include <cstdlib>
 #include <set>
 
 #include "wavefount/core/robust.h"
@@ -67,6 +68,25 @@ void judge_origins(const Scene& scene, const TrueWave& truth, const Wave& wave, 
   }
 }
 
+void print_wave(const Scene& scene, const TrueWave& truth, const Wave& wave, const SourceFit& fit) {
+  std::printf(
+      "  wave %d n %zu %s jitter %.2f speed %.1f (true %.1f, z %.1f; draws %.1f z2 %.1f); true at",
+      wave.number, wave.entries.size(), name_of(wave.answer).c_str(), wave.jitter_min,
+      wave.slowness ? 1 / wave.slowness->min_per_um : 0.0, 1 / truth.slowness_min_per_um,
+      wave.slowness
+          ? (wave.slowness->min_per_um - truth.slowness_min_per_um) / wave.slowness->se_min_per_um
+          : 0.0,
+      1 / fit.slowness_min_per_um,
+      (fit.slowness_min_per_um - truth.slowness_min_per_um) / fit.slowness_se_min_per_um);
+  for (const auto& source : truth.sources_um) std::printf(" (%.0f %.0f)", source.x, source.y);
+  std::printf("; spacing %.0f; found", scene.spacing_um);
+  for (const auto& origin : wave.origins)
+    std::printf(" (%.0f %.0f p %.2f%s prom %.1f)", origin.x_um, origin.y_um, origin.probability,
+                origin.claimed ? " claimed" : "", origin.prominence_min.value_or(0));
+  for (const auto& reason : wave.reasons) std::printf(" %s", reason.c_str());
+  std::printf("\n");
+}
+
 }  // namespace
 
 Measured measure(const Scene& scene, std::uint64_t seed) {
@@ -82,6 +102,7 @@ Measured measure(const Scene& scene, std::uint64_t seed) {
   for (std::size_t i = 0; i < cycles.size(); ++i) entries.entries[i].cycle = cycles[i];
   WaveRules rules;
   rules.least_se_min = 0.015;
+  rules.seed = seed;
   rules.film_end_min = scene.times_min.back();
   auto found =
       find_waves(entries, {&scene.tube, &scene.interphases, &scene.nuclei, &chronology}, rules);
@@ -93,6 +114,7 @@ Measured measure(const Scene& scene, std::uint64_t seed) {
       measured.waves, entries,
       {&scene.tube, &scene.interphases, &scene.nuclei, &territories, &chronology, &found.fields},
       origin_rules);
+  measured.fields = std::move(found.fields);
   measured.seconds =
       std::chrono::duration<double>(std::chrono::steady_clock::now() - begin).count();
   return measured;
@@ -112,6 +134,8 @@ void judge(const Scene& scene, const Measured& measured, Tally& tally) {
       continue;
     }
     ++matched;
+    if (std::getenv("WAVEFOUNT_WAVE_DETAIL") != nullptr)
+      print_wave(scene, truth, *wave, measured.fields.fits[wave->number - 1]);
     ++tally.answers[static_cast<std::size_t>(wave->answer)];
     judge_speed(truth, *wave, tally);
     judge_origins(scene, truth, *wave, tally);

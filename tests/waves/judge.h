@@ -5,6 +5,7 @@
 
 #include "scenes.h"
 #include "wavefount/core/wave.h"
+#include "wavefount/waves/arrival_fields.h"
 
 namespace wavefount::testing {
 
@@ -12,6 +13,7 @@ namespace wavefount::testing {
 struct Measured {
   WaveEntries entries;
   Waves waves;
+  ArrivalFields fields;
   double seconds = 0;
 };
 

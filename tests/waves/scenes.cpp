@@ -185,6 +185,14 @@ void add_interphases(std::vector<Event> events, const SceneOptions& options, Sce
     add_entry(scene, event.nucleus, event.place, event.time, options.timing_error_min,
               first ? -1 : before->time + mitosis);
     before = &event;
+    const bool last = &event == &events.back() || (&event + 1)->nucleus != event.nucleus;
+    if (!last) continue;
+    Interphase unfinished;
+    unfinished.nucleus = event.nucleus;
+    unfinished.outcome = Outcome::unfinished;
+    unfinished.formed_min = event.time + mitosis;
+    unfinished.place_um = event.place;
+    scene.interphases.interphases.push_back(unfinished);
   }
 }
 

@@ -11,7 +11,9 @@ namespace {
 constexpr std::size_t least_timed = 5;
 
 bool in_order(const Findings& findings, const OriginRules& rules) {
-  return findings.order_p <= rules.visible_p && findings.field_range_min > findings.finest_min;
+  const auto& candidates = findings.candidates;
+  return candidates.visible_probability >= rules.visible_probability &&
+         candidates.range_min > findings.finest_min;
 }
 
 /// Candidates more likely than not.
@@ -77,7 +79,7 @@ void add_weakness(Reasons& reasons, const Wave& wave, const WaveEntries& entries
     reasons.queue("few-nuclei",
                   "The answer rests on " + std::to_string(findings.timed) + " timed nuclei.");
   constexpr double many = 0.25;
-  const double badly = badly_timed_share(wave, entries, findings.field_range_min);
+  const double badly = badly_timed_share(wave, entries, findings.candidates.range_min);
   if (badly > many)
     reasons.queue("badly-timed", "For " + percent(badly) +
                                      " of the nuclei the entry time is less certain than a "

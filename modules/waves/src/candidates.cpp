@@ -10,53 +10,51 @@
 namespace wavefount {
 namespace {
 
-/// Nuclei first, then the middles of their links: the field's minimum lies between nuclei as often
-/// as at one.
-struct DrawingBoard {
-  std::vector<Point> places_um;
-  std::vector<int> nearest;  ///< arrival nearest to each place
-  FieldGraph graph;
-};
-
-void connect(FieldGraph& graph, int a, int b, bool gap) {
-  graph.neighbours[a].push_back(b);
-  graph.over_gap[a].push_back(gap);
-  graph.neighbours[b].push_back(a);
-  graph.over_gap[b].push_back(gap);
-}
-
 double distance(Point a, Point b) {
   return std::hypot(a.x - b.x, a.y - b.y);
 }
 
-DrawingBoard drawing_board(const Arrivals& arrivals, const std::vector<Link>& links) {
-  // A draw costs the square, its preparation the cube of the number of places.
-  constexpr std::size_t most_places = 260;
-  DrawingBoard board;
-  board.places_um = arrivals.places_um;
-  board.nearest.resize(arrivals.places_um.size());
-  std::iota(board.nearest.begin(), board.nearest.end(), 0);
-  const bool middles = arrivals.places_um.size() + links.size() <= most_places;
-  const auto count = arrivals.places_um.size() + (middles ? links.size() : 0);
-  board.graph.neighbours.resize(count);
-  board.graph.over_gap.resize(count);
-  for (const auto& link : links) {
-    if (!middles || link.bridge) {
-      connect(board.graph, link.a, link.b, link.bridge);
-      if (!middles) continue;
-    }
-    const auto middle = static_cast<int>(board.places_um.size());
-    const Point a = arrivals.places_um[link.a];
-    const Point b = arrivals.places_um[link.b];
-    if (link.bridge) continue;
-    board.places_um.push_back({(a.x + b.x) / 2, (a.y + b.y) / 2});
-    board.nearest.push_back(link.a);
-    connect(board.graph, link.a, middle, false);
-    connect(board.graph, middle, link.b, false);
+/// How far inside the view a place lies, from one of its edges.
+double depth_from(ViewEdge edge, Point place, const Tube& tube) {
+  switch (edge) {
+    case left_edge:
+      return place.x;
+    case right_edge:
+      return tube.length_um - place.x;
+    case upper_edge:
+      return place.y + tube.width_um / 2;
+    case lower_edge:
+      return tube.width_um / 2 - place.y;
   }
-  board.graph.neighbours.resize(board.places_um.size());
-  board.graph.over_gap.resize(board.places_um.size());
-  return board;
+  return 0;
+}
+
+constexpr ViewEdge all_edges[] = {left_edge, right_edge, upper_edge, lower_edge};
+
+Boundary boundary_at(ViewEdge edge, const Tube& tube) {
+  switch (edge) {
+    case left_edge:
+      return tube.left_end;
+    case right_edge:
+      return tube.right_end;
+    case upper_edge:
+      return tube.upper_wall;
+    case lower_edge:
+      return tube.lower_wall;
+  }
+  return Boundary::closed;
+}
+
+bool parted(int which, ViewEdge edge, const std::vector<Point>& places, const Tube& tube) {
+  const double depth = depth_from(edge, places[which], tube);
+  Point foot = places[which];
+  if (edge == left_edge) foot.x -= depth;
+  if (edge == right_edge) foot.x += depth;
+  if (edge == upper_edge) foot.y -= depth;
+  if (edge == lower_edge) foot.y += depth;
+  for (int i = 0; i < static_cast<int>(places.size()); ++i)
+    if (i != which && distance(places[i], foot) < std::abs(depth)) return true;
+  return false;
 }
 
 /// A minimum of one draw.
@@ -67,70 +65,60 @@ struct Sample {
   double value = 0;
   std::optional<double> prominence;
   bool behind_gap = false;
+  bool entering = false;
   std::vector<char> basin;  ///< by arrival
   int candidate = -1;
 };
 
-std::vector<Sample> samples_of(const DrawingBoard& board, const std::vector<double>& field,
-                               std::size_t arrivals, int draw, double least_prominence) {
-  const auto basins = find_minima(field, board.graph, least_prominence);
+/// Where the drawn fields are looked at.
+struct Board {
+  const Arrivals& arrivals;
+  const std::vector<Link>& links;
+  const CandidateSearch& search;
+  std::vector<unsigned> edges;
+};
+
+int leader_of(const Basins& basins, int which, const SourceDraw& draw) {
+  int leader = -1;
+  for (int i = 0; i < static_cast<int>(basins.basin.size()); ++i) {
+    if (basins.basin[i] != which) continue;
+    if (leader < 0 || draw.field_min[i] < draw.field_min[leader]) leader = i;
+  }
+  return leader;
+}
+
+/// The front comes in over an open edge when its source lies no deeper in the view than the nucleus
+/// at that edge which it reaches first; a quarter of a spacing is not told apart.
+bool enters(Point source, int leader, const Board& board) {
+  const double slack = board.search.spacing_um / 4;
+  return std::any_of(std::begin(all_edges), std::end(all_edges), [&](ViewEdge edge) {
+    if ((board.edges[leader] & edge) == 0) return false;
+    const Tube& tube = *board.search.tube;
+    return depth_from(edge, source, tube) <=
+           depth_from(edge, board.arrivals.places_um[leader], tube) + slack;
+  });
+}
+
+std::vector<Sample> samples_of(const SourceDraw& draw, int number, const Board& board) {
+  // A source that leads its surroundings stands out by the way to its neighbours; less than half
+  // a spacing's travel is not told from the scatter of single nuclei.
+  constexpr double least_spacings = 0.5;
+  const auto basins = find_minima(
+      draw, board.links, least_spacings * board.search.spacing_um * draw.slowness_min_per_um);
   std::vector<Sample> samples;
-  for (const auto& minimum : basins.minima) {
+  for (int i = 0; i < static_cast<int>(basins.minima.size()); ++i) {
+    const auto& minimum = basins.minima[i];
     Sample sample;
-    sample.draw = draw;
-    sample.leader = board.nearest[minimum.place];
-    sample.place_um = board.places_um[minimum.place];
-    if (minimum.place >= static_cast<int>(arrivals)) {
-      // Of the two nuclei beside a middle the earlier one leads.
-      for (const int near : board.graph.neighbours[minimum.place])
-        if (field[near] < field[sample.leader]) sample.leader = near;
-    }
-    sample.value = minimum.value;
+    sample.draw = number;
+    sample.leader = leader_of(basins, i, draw);
+    sample.place_um = draw.places_um[minimum.source];
+    sample.entering = enters(sample.place_um, sample.leader, board);
+    if (sample.entering) sample.place_um = board.arrivals.places_um[sample.leader];
+    sample.value = draw.starts_min[minimum.source];
     sample.prominence = minimum.prominence;
     sample.behind_gap = minimum.behind_gap;
-    sample.basin.assign(arrivals, 0);
+    for (const int basin : basins.basin) sample.basin.push_back(basin == i);
     samples.push_back(std::move(sample));
-  }
-  for (std::size_t i = 0; i < arrivals; ++i) samples[basins.basin[i]].basin[i] = 1;
-  return samples;
-}
-
-/// How many draws each set of scales gets, in proportion to its weight; few sets, since each
-/// costs a factorisation.
-std::vector<std::pair<FieldScale, int>> shares_of_draws(const FieldFit& fit, int draws) {
-  constexpr int slots = 16;
-  std::vector<std::pair<FieldScale, int>> shares;
-  double cumulative = 0;
-  int used = 0;
-  for (const auto& one : fit.scales) {
-    cumulative += one.weight;
-    const int until = static_cast<int>(std::floor(cumulative * slots + 0.5));
-    if (until > used) shares.emplace_back(one.scale, until - used);
-    used = std::max(used, until);
-  }
-  int given = 0;
-  for (auto& share : shares) {
-    share.second = share.second * draws / std::max(used, 1);
-    given += share.second;
-  }
-  if (!shares.empty()) shares.front().second += draws - given;
-  return shares;
-}
-
-std::vector<Sample> draw_samples(const Arrivals& arrivals, const FieldFit& fit,
-                                 const DrawingBoard& board, const CandidateSearch& search) {
-  const CounterRandom random(search.seed);
-  std::vector<Sample> samples;
-  int draw = 0;
-  for (const auto& [scale, count] : shares_of_draws(fit, search.draws)) {
-    const FieldPosterior posterior(arrivals, fit.astray, scale, board.places_um);
-    for (int i = 0; i < count; ++i, ++draw) {
-      const Eigen::VectorXd drawn = posterior.draw(random, static_cast<std::uint64_t>(draw));
-      const std::vector<double> field(drawn.data(), drawn.data() + drawn.size());
-      auto found =
-          samples_of(board, field, arrivals.places_um.size(), draw, search.least_prominence_min);
-      std::move(found.begin(), found.end(), std::back_inserter(samples));
-    }
   }
   return samples;
 }
@@ -148,18 +136,17 @@ double common(const std::vector<char>& one, const std::vector<char>& two) {
 /// Gathers samples around the places where most of them lie.
 class Matching {
  public:
-  Matching(std::vector<Sample>& samples, const Arrivals& arrivals, const CandidateSearch& search)
-      : samples_(samples), arrivals_(arrivals), search_(search) {}
+  Matching(std::vector<Sample>& samples, const Arrivals& arrivals, double spacing_um, int draws)
+      : samples_(samples), arrivals_(arrivals), spacing_um_(spacing_um), draws_(draws) {}
 
   std::vector<Candidate> run() {
     std::vector<Candidate> found;
     constexpr double least_probability = 0.05;
     for (;;) {
-      const int centre = densest();
-      if (centre < 0) break;
-      const auto members = claim(centre, static_cast<int>(found.size()));
-      const double probability =
-          static_cast<double>(members.size()) / static_cast<double>(search_.draws);
+      const auto centre = densest();
+      if (!centre) break;
+      const auto members = claim(*centre, static_cast<int>(found.size()));
+      const double probability = static_cast<double>(members.size()) / draws_;
       if (probability < least_probability) break;
       found.push_back(summary(members, probability));
     }
@@ -167,35 +154,44 @@ class Matching {
   }
 
  private:
-  /// The arrival with most unclaimed minima within one spacing, each draw counted once.
-  int densest() const {
-    int best = -1;
+  /// The leader around whose usual minimum most unclaimed ones lie within a spacing.
+  std::optional<Point> densest() const {
+    std::optional<Point> best;
     int most = 0;
-    std::vector<int> leaders(arrivals_.places_um.size(), 0);
-    for (const auto& sample : samples_) leaders[sample.leader] += sample.candidate == -1;
-    for (int i = 0; i < static_cast<int>(leaders.size()); ++i) {
-      if (leaders[i] == 0) continue;
+    for (const auto& [leader, place] : usual_places()) {
       int last = -1, count = 0;
       for (const auto& sample : samples_) {
-        if (sample.candidate != -1 || sample.draw == last || !near(sample, i)) continue;
+        if (sample.candidate != -1 || sample.draw == last || !near(sample, place)) continue;
         last = sample.draw;
         ++count;
       }
-      // Of equally good places the one where the minima themselves lie.
-      const int score = count * static_cast<int>(search_.draws + 1) + leaders[i];
-      if (score > most) {
-        most = score;
-        best = i;
-      }
+      if (count <= most) continue;
+      most = count;
+      best = place;
     }
     return best;
   }
 
-  bool near(const Sample& sample, int arrival) const {
-    return distance(sample.place_um, arrivals_.places_um[arrival]) <= search_.spacing_um;
+  /// Mean place of the unclaimed minima that each arrival leads.
+  std::map<int, Point> usual_places() const {
+    std::map<int, Point> sums;
+    std::map<int, double> counts;
+    for (const auto& sample : samples_) {
+      if (sample.candidate != -1) continue;
+      auto& sum = sums[sample.leader];
+      sum.x += sample.place_um.x;
+      sum.y += sample.place_um.y;
+      ++counts[sample.leader];
+    }
+    for (auto& [leader, sum] : sums) sum = {sum.x / counts[leader], sum.y / counts[leader]};
+    return sums;
   }
 
-  std::vector<char> usual_basin(int centre) const {
+  bool near(const Sample& sample, Point centre) const {
+    return distance(sample.place_um, centre) <= spacing_um_;
+  }
+
+  std::vector<char> usual_basin(Point centre) const {
     std::vector<double> counts(arrivals_.places_um.size(), 0.0);
     double samples = 0;
     for (const auto& sample : samples_) {
@@ -205,11 +201,10 @@ class Matching {
     }
     std::vector<char> usual(counts.size(), 0);
     for (std::size_t i = 0; i < counts.size(); ++i) usual[i] = 2 * counts[i] > samples;
-    usual[centre] = 1;
     return usual;
   }
 
-  std::vector<int> claim(int centre, int number) {
+  std::vector<int> claim(Point centre, int number) {
     const auto usual = usual_basin(centre);
     std::vector<int> members;
     for (int i = 0; i < static_cast<int>(samples_.size()); ++i) {
@@ -259,7 +254,7 @@ class Matching {
     candidate.position_se_um = spread(members, candidate.place_um);
     set_prominence(candidate, prominences);
     double edge = 0;
-    for (const int at : members) edge += search_.at_view_edge[samples_[at].leader];
+    for (const int at : members) edge += samples_[at].entering;
     candidate.at_view_edge = 2 * edge > count;
     return candidate;
   }
@@ -285,7 +280,8 @@ class Matching {
 
   std::vector<Sample>& samples_;
   const Arrivals& arrivals_;
-  const CandidateSearch& search_;
+  double spacing_um_;
+  int draws_;
 };
 
 /// The minima of each draw, as candidates.
@@ -295,22 +291,21 @@ std::vector<std::vector<int>> candidates_by_draw(const std::vector<Sample>& samp
   return by_draw;
 }
 
-void add_probabilities(Candidates& result, const std::vector<Sample>& samples,
-                       const CandidateSearch& search) {
+void add_probabilities(Candidates& result, const std::vector<Sample>& samples, int draws) {
   std::vector<int> named;
   for (int i = 0; i < static_cast<int>(result.found.size()); ++i)
     if (result.found[i].probability >= 0.5) named.push_back(i);
-  const double share = 1.0 / search.draws;
-  for (const auto& draw : candidates_by_draw(samples, search.draws)) {
+  const double share = 1.0 / draws;
+  for (const auto& draw : candidates_by_draw(samples, draws)) {
     if (draw.size() == 1 && draw.front() == 0) result.alone_probability += share;
     const bool all = std::all_of(named.begin(), named.end(), [&](int one) {
       return std::find(draw.begin(), draw.end(), one) != draw.end();
     });
     if (all && !named.empty()) result.joint_probability += share;
   }
-  std::vector<char> entering(search.draws, 0);
+  std::vector<char> entering(draws, 0);
   for (const auto& sample : samples)
-    if (search.at_view_edge[sample.leader]) entering[sample.draw] = 1;
+    if (sample.entering) entering[sample.draw] = 1;
   for (const char one : entering) result.entering_probability += share * one;
 }
 
@@ -328,67 +323,58 @@ void add_basins(Candidates& result, const std::vector<Sample>& samples, std::siz
   }
 }
 
+double spread_of(const std::vector<double>& values) {
+  double mean = 0, square = 0;
+  const auto count = static_cast<double>(values.size());
+  for (const double value : values) mean += value / count;
+  for (const double value : values) square += (value - mean) * (value - mean) / count;
+  return std::sqrt(square);
+}
+
+void add_visibility(Candidates& result, const Arrivals& arrivals, const SourceFit& fit) {
+  constexpr double least_share = 0.33;
+  double error2 = 0;
+  for (const double se : arrivals.se_min)
+    error2 += se * se / static_cast<double>(arrivals.se_min.size());
+  std::vector<double> ranges;
+  for (const auto& draw : fit.draws) {
+    const double noise = std::sqrt(draw.jitter_min * draw.jitter_min + error2);
+    if (spread_of(draw.field_min) > least_share * noise)
+      result.visible_probability += 1.0 / static_cast<double>(fit.draws.size());
+    const auto [low, high] = std::minmax_element(draw.field_min.begin(), draw.field_min.end());
+    ranges.push_back(*high - *low);
+  }
+  result.range_min = median(std::move(ranges));
+}
+
 }  // namespace
 
-FieldGraph field_graph(std::size_t places, const std::vector<Link>& links) {
-  FieldGraph graph;
-  graph.neighbours.resize(places);
-  graph.over_gap.resize(places);
-  for (const auto& link : links) connect(graph, link.a, link.b, link.bridge);
-  return graph;
+std::vector<unsigned> view_edges(const Arrivals& arrivals, const Tube& tube, bool wide) {
+  std::vector<unsigned> edges(arrivals.places_um.size(), 0);
+  for (const ViewEdge edge : all_edges) {
+    const bool wall = edge == upper_edge || edge == lower_edge;
+    if (boundary_at(edge, tube) == Boundary::closed || (wall && !wide)) continue;
+    for (int i = 0; i < static_cast<int>(edges.size()); ++i)
+      if (!parted(i, edge, arrivals.places_um, tube)) edges[i] |= edge;
+  }
+  return edges;
 }
 
-Candidates find_candidates(const Arrivals& arrivals, const FieldFit& fit,
+Candidates find_candidates(const Arrivals& arrivals, const SourceFit& fit,
                            const std::vector<Link>& links, const CandidateSearch& search) {
-  const auto board = drawing_board(arrivals, links);
-  auto samples = draw_samples(arrivals, fit, board, search);
   Candidates result;
-  result.found = Matching(samples, arrivals, search).run();
-  add_probabilities(result, samples, search);
+  const Board board{arrivals, links, search, view_edges(arrivals, *search.tube, search.wide)};
+  const auto draws = static_cast<int>(fit.draws.size());
+  std::vector<Sample> samples;
+  for (int i = 0; i < draws; ++i) {
+    auto found = samples_of(fit.draws[i], i, board);
+    std::move(found.begin(), found.end(), std::back_inserter(samples));
+  }
+  result.found = Matching(samples, arrivals, search.spacing_um, draws).run();
+  add_probabilities(result, samples, draws);
   add_basins(result, samples, arrivals.places_um.size());
+  add_visibility(result, arrivals, fit);
   return result;
-}
-
-MeanField mean_field(const Arrivals& arrivals, const FieldFit& fit) {
-  const auto count = arrivals.places_um.size();
-  MeanField field{std::vector<double>(count, 0.0), std::vector<double>(count, 0.0)};
-  constexpr double enough_weight = 0.95;
-  double all = 0;
-  std::vector<double> square(count, 0.0), variance(count, 0.0);
-  for (const auto& [scale, weight] : fit.scales) {
-    const FieldPosterior posterior(arrivals, fit.astray, scale, arrivals.places_um);
-    const Eigen::VectorXd se = posterior.se_min();
-    for (std::size_t i = 0; i < count; ++i) {
-      const auto at = static_cast<Eigen::Index>(i);
-      field.mean_min[i] += weight * posterior.mean_min()(at);
-      variance[i] += weight * se(at) * se(at);
-    }
-    all += weight;
-    if (all > enough_weight) break;
-  }
-  for (std::size_t i = 0; i < count && all > 0; ++i) {
-    field.mean_min[i] /= all;
-    field.se_min[i] = std::sqrt(variance[i] / all);
-  }
-  return field;
-}
-
-std::vector<double> chance_of_first(const Arrivals& arrivals, const FieldFit& fit,
-                                    double trend_sd_min_per_um, int draws, std::uint64_t seed) {
-  const auto count = arrivals.places_um.size();
-  std::vector<double> chance(count, 0.0);
-  const CounterRandom random(seed);
-  int drawn = 0;
-  for (const auto& [scale, share] : shares_of_draws(fit, draws)) {
-    const FieldPrior prior(arrivals.places_um, scale, trend_sd_min_per_um);
-    for (int i = 0; i < share; ++i, ++drawn) {
-      const Eigen::VectorXd field = prior.draw(random, static_cast<std::uint64_t>(drawn));
-      Eigen::Index first = 0;
-      field.minCoeff(&first);
-      chance[first] += 1.0 / draws;
-    }
-  }
-  return chance;
 }
 
 }  // namespace wavefount

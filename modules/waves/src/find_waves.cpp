@@ -4,7 +4,6 @@
 #include <cmath>
 
 #include "wavefount/core/robust.h"
-#include "wavefount/waves/candidates.h"
 #include "wavefount/waves/fate.h"
 #include "wavefount/waves/fronts.h"
 #include "wavefount/waves/grouping.h"
@@ -27,17 +26,32 @@ double usual_period(const Waves& waves, const Chronology& chronology) {
   return chronology.period.known() ? chronology.period.at(0) : usual_min;
 }
 
+/// Basins as the fronts want them: positions of sources; all to the only source where no draws
+/// tell them apart.
+std::vector<int> basins_of(const Candidates& candidates, std::size_t sources, std::size_t count) {
+  auto basin = candidates.basin;
+  if (basin.empty() || sources == 1) basin.assign(count, 0);
+  return basin;
+}
+
 void measure_front(Wave& wave, std::size_t at, const WaveView& view, const ArrivalFields& fields) {
   const auto& arrivals = fields.arrivals[at];
   const auto& fit = fields.fits[at];
-  const auto sources =
-      mean_sources(arrivals, fit, fields.links[at], *view.tube, fields.wide, fields.spacing_um);
-  FrontView front_view{
-      &arrivals,      &fit.astray,
-      sources.basin,  field_graph(arrivals.places_um.size(), fields.links[at]).neighbours,
-      fit.jitter_min, fields.spacing_um,
-      fields.wide};
-  wave.fronts = measure_fronts(sources.sources, front_view);
+  const auto count = arrivals.times_min.size();
+  const auto sources = sources_of(arrivals, fields.candidates[at], *view.tube, fields.wide);
+  std::vector<std::vector<int>> neighbours(count);
+  for (const auto& link : fields.links[at]) {
+    neighbours[link.a].push_back(link.b);
+    neighbours[link.b].push_back(link.a);
+  }
+  const FrontView front_view{&arrivals,
+                             &fit.astray,
+                             basins_of(fields.candidates[at], sources.size(), count),
+                             std::move(neighbours),
+                             fit.jitter_min,
+                             fields.spacing_um,
+                             !fields.line};
+  wave.fronts = measure_fronts(sources, front_view);
   wave.slowness = mean_slowness(wave.fronts);
   wave.jitter_min = fit.jitter_min;
 }
@@ -77,22 +91,25 @@ FoundWaves find_waves(WaveEntries& entries, const WaveView& view, const WaveRule
   auto& fields = found.fields;
   fields.spacing_um = chronology.spacing_um;
   fields.wide = is_wide(*view.tube, chronology.spacing_um, entries);
+  fields.line = is_line(*view.tube, chronology.spacing_um, fields.wide);
   fields.period_min = usual_period(found.waves, chronology);
   for (const auto& wave : found.waves.waves) {
-    fields.arrivals.push_back(arrivals_of(wave, entries, *view.tube, chronology.spacing_um,
-                                          fields.wide, rules.least_se_min));
+    fields.arrivals.push_back(arrivals_of(wave, entries, fields.line, rules.least_se_min));
     fields.links.push_back(
         wave_links(wave.entries, entries, *view.tube, chronology, rules.neighbours));
     const auto doubt = number_doubt(wave, entries, chronology);
     fields.steepness.push_back(doubt.steepness);
     fields.contradicting_share.push_back(doubt.contradicting_share);
   }
-  fields.fits = fit_fields(fields.arrivals, fields.spacing_um, fields.period_min);
+  const auto region = source_region(*view.tube, fields.arrivals, fields.spacing_um, fields.line);
+  fields.fits = fit_sources(fields.arrivals, region, {rules.draws, fields.period_min, rules.seed});
   const FateRules fate{rules.film_end_min, chronology.spacing_um, rules.longest_mitosis_min};
   for (std::size_t i = 0; i < found.waves.waves.size(); ++i) {
     auto& wave = found.waves.waves[i];
     auto& jitter = fields.fits[i].jitter_min;
     if (jitter <= 0) jitter = rules.unseen_jitter_min;
+    fields.candidates.push_back(find_candidates(fields.arrivals[i], fields.fits[i], fields.links[i],
+                                                {fields.spacing_um, view.tube, fields.wide}));
     wave.fate = fate_of(wave, entries, *view.interphases, *view.nuclei, *view.tube, fate);
     measure_front(wave, i, view, fields);
   }

@@ -3,6 +3,8 @@
 #include <algorithm>
 #include <cmath>
 
+#include "wavefount/waves/counter_random.h"
+
 namespace wavefount {
 namespace {
 
@@ -79,13 +81,13 @@ std::vector<int> others_of(const Wave& wave, int entry) {
 
 }  // namespace
 
-void time_among_neighbours(const Wave& wave, WaveEntries& entries, const FieldFit& fit,
+void time_among_neighbours(const Wave& wave, WaveEntries& entries, const std::vector<char>& astray,
                            std::uint64_t seed) {
   const CounterRandom random(seed);
   const bool few = wave.entries.size() < least_for_neighbours;
   for (std::size_t i = 0; i < wave.entries.size(); ++i) {
     auto& own = entries.entries[wave.entries[i]];
-    const bool astray = i < fit.astray.size() && fit.astray[i] != 0;
+    const bool strays = i < astray.size() && astray[i] != 0;
     if (!own.neighbours.empty()) set_delay(own, entries);
     const auto others = few ? others_of(wave, wave.entries[i]) : own.neighbours;
     OrderShares shares;
@@ -93,7 +95,7 @@ void time_among_neighbours(const Wave& wave, WaveEntries& entries, const FieldFi
       shares = order_among(wave.entries[i], others, entries, random);
       own.lead_probability = shares.first;
     }
-    own.timing = timing_of(own, entries, astray, shares);
+    own.timing = timing_of(own, entries, strays, shares);
   }
 }
 

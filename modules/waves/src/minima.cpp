@@ -2,109 +2,100 @@
 
 #include <algorithm>
 #include <numeric>
+#include <utility>
 
 namespace wavefount {
 namespace {
 
-/// The growing sublevel set: its connected parts and the basins inside them.
-class Flooding {
+/// Where the fronts of two sources meet.
+struct Saddle {
+  double time = 0;
+  int one = 0, other = 0;
+  bool bridge = false;
+};
+
+std::vector<Saddle> saddles_of(const SourceDraw& draw, const std::vector<Link>& links) {
+  std::vector<Saddle> saddles;
+  for (const auto& link : links) {
+    const int one = draw.source[link.a];
+    const int other = draw.source[link.b];
+    if (one == other) continue;
+    // Fronts that leave two neighbours towards one another meet after the rest of the way.
+    const double met = (draw.field_min[link.a] + draw.field_min[link.b] +
+                        draw.slowness_min_per_um * link.length_um) /
+                       2;
+    saddles.push_back({met, one, other, link.bridge});
+  }
+  std::stable_sort(saddles.begin(), saddles.end(),
+                   [](const Saddle& left, const Saddle& right) { return left.time < right.time; });
+  return saddles;
+}
+
+/// The growing sublevel set, basin by basin.
+class Merging {
  public:
-  Flooding(const std::vector<double>& field, const FieldGraph& graph, double least_prominence)
-      : field_(field),
-        graph_(graph),
-        least_(least_prominence),
-        part_(field.size(), -1),
-        basin_(field.size(), -1) {}
-
-  Basins run() {
-    std::vector<int> order(field_.size());
-    std::iota(order.begin(), order.end(), 0);
-    std::stable_sort(order.begin(), order.end(),
-                     [this](int a, int b) { return field_[a] < field_[b]; });
-    for (const int place : order) flood(place);
-    return result();
+  Merging(const SourceDraw& draw, double least) : draw_(draw), least_(least) {
+    const auto count = draw.starts_min.size();
+    joined_.resize(count);
+    std::iota(joined_.begin(), joined_.end(), 0);
+    absorbed_ = joined_;
+    for (int i = 0; i < static_cast<int>(count); ++i) minima_.push_back({i, std::nullopt, false});
   }
 
- private:
-  int part_of(int place) const {
-    int part = part_[place];
-    while (joined_[part] != part) part = joined_[part];
-    return part;
-  }
-
-  void flood(int place) {
-    int lowest = -1;
-    const auto& around = graph_.neighbours[place];
-    for (const int near : around) {
-      if (part_[near] >= 0 && (lowest < 0 || field_[near] < field_[lowest])) lowest = near;
+  void meet(const Saddle& saddle) {
+    int older = root(joined_, saddle.one);
+    int younger = root(joined_, saddle.other);
+    int beyond = saddle.one;
+    if (older == younger) return;
+    if (draw_.starts_min[younger] < draw_.starts_min[older]) {
+      std::swap(older, younger);
+      beyond = saddle.other;
     }
-    if (lowest < 0) {
-      part_[place] = basin_[place] = static_cast<int>(minima_.size());
-      joined_.push_back(part_[place]);
-      absorbed_.push_back(part_[place]);
-      minima_.push_back({place, field_[place], std::nullopt, false});
-      return;
-    }
-    part_[place] = part_of(lowest);
-    basin_[place] = basin_[lowest];
-    for (std::size_t i = 0; i < around.size(); ++i) {
-      if (around[i] != lowest && part_[around[i]] >= 0) meet(place, lowest, around[i]);
-    }
-  }
-
-  void meet(int saddle, int lowest, int other) {
-    const int one = part_of(saddle);
-    const int two = part_of(other);
-    if (one == two) return;
-    const int older = std::min(one, two);  // numbered by rising minimum
-    const int younger = std::max(one, two);
     joined_[younger] = older;
     auto& minimum = minima_[younger];
-    minimum.prominence = field_[saddle] - minimum.value;
-    minimum.behind_gap = crosses_gap(saddle, lowest) || crosses_gap(saddle, other);
-    if (*minimum.prominence < least_) {
-      // Absorbed into the basin it meets, which itself may be part of another.
-      const int into = younger == one ? basin_[other] : basin_[lowest];
-      absorbed_[younger] = into;
-    }
-  }
-
-  bool crosses_gap(int from, int to) const {
-    const auto& around = graph_.neighbours[from];
-    const auto at = std::find(around.begin(), around.end(), to) - around.begin();
-    return graph_.over_gap[from][at] != 0;
-  }
-
-  int kept_basin(int basin) const {
-    while (absorbed_[basin] != basin) basin = absorbed_[basin];
-    return basin;
+    minimum.prominence = saddle.time - draw_.starts_min[younger];
+    minimum.behind_gap = saddle.bridge;
+    if (*minimum.prominence < least_) absorbed_[younger] = beyond;
   }
 
   Basins result() const {
-    Basins result;
-    std::vector<int> position(minima_.size(), -1);
+    std::vector<int> order;
     for (int i = 0; i < static_cast<int>(minima_.size()); ++i) {
-      if (kept_basin(i) != i) continue;
-      position[i] = static_cast<int>(result.minima.size());
-      result.minima.push_back(minima_[i]);
+      const bool seen =
+          std::find(draw_.source.begin(), draw_.source.end(), i) != draw_.source.end();
+      if (seen && absorbed_[i] == i) order.push_back(i);
     }
-    for (const int basin : basin_) result.basin.push_back(position[kept_basin(basin)]);
-    return result;
+    std::stable_sort(order.begin(), order.end(),
+                     [&](int a, int b) { return draw_.starts_min[a] < draw_.starts_min[b]; });
+    Basins basins;
+    std::vector<int> position(minima_.size(), -1);
+    for (const int one : order) {
+      position[one] = static_cast<int>(basins.minima.size());
+      basins.minima.push_back(minima_[one]);
+    }
+    for (const int source : draw_.source) basins.basin.push_back(position[root(absorbed_, source)]);
+    return basins;
   }
 
-  const std::vector<double>& field_;
-  const FieldGraph& graph_;
+ private:
+  static int root(const std::vector<int>& parent, int one) {
+    while (parent[one] != one) one = parent[one];
+    return one;
+  }
+
+  const SourceDraw& draw_;
   double least_;
-  std::vector<int> part_, basin_;
   std::vector<int> joined_, absorbed_;
   std::vector<Minimum> minima_;
 };
 
 }  // namespace
 
-Basins find_minima(const std::vector<double>& field, const FieldGraph& graph,
-                   double least_prominence) {
-  return Flooding(field, graph, least_prominence).run();
+Basins find_minima(const SourceDraw& draw, const std::vector<Link>& links,
+                   double least_prominence_min) {
+  Merging merging(draw, least_prominence_min);
+  for (const auto& saddle : saddles_of(draw, links)) merging.meet(saddle);
+  return merging.result();
 }
 
 }  // namespace wavefount

@@ -5,6 +5,7 @@
 #include <numeric>
 
 #include "wavefount/core/robust.h"
+#include "wavefount/waves/counter_random.h"
 
 namespace wavefount {
 namespace {

@@ -5,6 +5,7 @@
 
 #include "wavefount/core/robust.h"
 #include "wavefount/waves/answer.h"
+#include "wavefount/waves/field.h"
 #include "wavefount/waves/leads.h"
 #include "wavefount/waves/markers.h"
 #include "wavefount/waves/order.h"
@@ -14,7 +15,7 @@ namespace wavefount {
 namespace {
 
 /// Streams of random numbers: one number a wave and purpose.
-enum class Purpose : std::uint64_t { order = 1, fields = 2, chance = 3, leads = 4 };
+enum class Purpose : std::uint64_t { order = 1, chance = 2, leads = 3 };
 
 std::uint64_t seed_for(std::uint64_t seed, int wave, Purpose purpose) {
   return seed + 1000003U * static_cast<std::uint64_t>(wave) +
@@ -25,7 +26,7 @@ std::uint64_t seed_for(std::uint64_t seed, int wave, Purpose purpose) {
 double trend_sd(const ArrivalFields& fields) {
   double square = 0, count = 0;
   for (std::size_t i = 0; i < fields.arrivals.size(); ++i) {
-    if (fields.fits[i].scales.empty()) continue;
+    if (fields.fits[i].draws.empty()) continue;
     const auto flat =
         flat_slowness(fields.arrivals[i], fields.fits[i].astray, fields.fits[i].jitter_min);
     square +=
@@ -47,7 +48,8 @@ class WaveOrigins {
         trend_(trend),
         arrivals_(view.fields->arrivals[at]),
         fit_(view.fields->fits[at]),
-        links_(view.fields->links[at]) {
+        links_(view.fields->links[at]),
+        candidates_(view.fields->candidates[at]) {
     // Steeper than this, a difference of half a period is within the scatter of neighbours.
     constexpr double steep = 0.8;
     constexpr double contradicting = 0.2;
@@ -60,12 +62,12 @@ class WaveOrigins {
     wave_.answer = answer_of(findings_, rules_);
     name_origins();
     claim();
-    remeasure_fronts();
+    drop_speeds();
     add_reasons(wave_, entries_, findings_);
     add_lost_near_origin();
     set_brightness_at_age(wave_, entries_, *view_.interphases);
     add_markers();
-    time_among_neighbours(wave_, entries_, fit_,
+    time_among_neighbours(wave_, entries_, fit_.astray,
                           seed_for(rules_.seed, wave_.number, Purpose::leads));
   }
 
@@ -74,24 +76,15 @@ class WaveOrigins {
 
   void measure() {
     findings_.timed = arrivals_.times_min.size();
-    if (fit_.scales.empty()) return;
+    if (fit_.draws.empty()) return;
     findings_.order_p = order_p_value(arrivals_, fit_.astray, links_, rules_.permutations,
                                       seed_for(rules_.seed, wave_.number, Purpose::order));
     findings_.spread_min = spread_min(arrivals_);
     constexpr double share_of_period = 0.08;
     findings_.scatter_min = rules_.scatter_min.value_or(share_of_period * view_.fields->period_min);
-    const auto field = mean_field(arrivals_, fit_);
-    const auto [low, high] = std::minmax_element(field.mean_min.begin(), field.mean_min.end());
-    findings_.field_range_min = *high - *low;
     // Entries are timed finer than a frame; what all of them share, a field does not resolve.
     findings_.finest_min = std::max(rules_.frame_interval_min / 2, 2 * median(arrivals_.se_min));
-    CandidateSearch search;
-    search.draws = rules_.draws;
-    search.spacing_um = spacing();
-    search.least_prominence_min = least_prominence_min(arrivals_, fit_, links_, spacing());
-    search.at_view_edge = at_view_edge(arrivals_, *view_.tube, view_.fields->wide);
-    search.seed = seed_for(rules_.seed, wave_.number, Purpose::fields);
-    findings_.candidates = find_candidates(arrivals_, fit_, links_, search);
+    findings_.candidates = candidates_;
     findings_.began_before_film = began_before_film();
   }
 
@@ -131,7 +124,9 @@ class WaveOrigins {
   void name_origins() {
     if (wave_.answer == Answer::too_few) return name_leader();
     if (!shows_origins()) return;
-    const auto chance = chance_of_first(arrivals_, fit_, trend_, rules_.draws,
+    constexpr int random_fields = 400;
+    const auto scales = fit_scales(arrivals_, fit_.astray, fit_.jitter_min, spacing());
+    const auto chance = chance_of_first(arrivals_, scales, trend_, random_fields,
                                         seed_for(rules_.seed, wave_.number, Purpose::chance));
     for (const auto& candidate : findings_.candidates.found) {
       Origin origin = described(candidate);
@@ -142,8 +137,8 @@ class WaveOrigins {
   }
 
   Site site_of_arrival(int arrival) const {
-    const auto edge = at_view_edge(arrivals_, *view_.tube, view_.fields->wide);
-    if (edge[arrival]) return Site::view_edge;
+    const auto edges = view_edges(arrivals_, *view_.tube, view_.fields->wide);
+    if (edges[arrival] != 0) return Site::view_edge;
     return site_of(straight_place(arrivals_.places_um[arrival], *view_.tube), spacing(),
                    view_.fields->wide);
   }
@@ -212,36 +207,14 @@ class WaveOrigins {
     }
   }
 
-  /// Sources as the candidates have them, where they are known better than from the mean field.
-  void remeasure_fronts() {
-    if (wave_.fate == Fate::terminal) {
-      wave_.slowness.reset();
-      wave_.fronts.clear();
-      return;
-    }
-    if (wave_.answer == Answer::synchronous || wave_.answer == Answer::incoherent) {
-      wave_.fronts.clear();
-      wave_.slowness.reset();
-      if (wave_.answer == Answer::synchronous) set_lowest_speed();
-      return;
-    }
-    const auto& found = findings_.candidates.found;
-    if (found.empty() || found.front().probability < 0.5) return;
-    std::vector<Source> sources;
-    for (int i = 0; i < static_cast<int>(found.size()) && found[i].probability >= 0.5; ++i)
-      sources.push_back(source_at(found[i].place_um, i + 1, found[i].at_view_edge, *view_.tube));
-    FrontView front_view{&arrivals_,
-                         &fit_.astray,
-                         findings_.candidates.basin,
-                         field_graph(arrivals_.places_um.size(), links_).neighbours,
-                         fit_.jitter_min,
-                         spacing(),
-                         view_.fields->wide};
-    const auto fronts = measure_fronts(sources, front_view);
-    if (const auto slowness = mean_slowness(fronts)) {
-      wave_.fronts = fronts;
-      wave_.slowness = slowness;
-    }
+  /// Waves of death and waves without a front have no speed; of those too fast to see it is known
+  /// from which on.
+  void drop_speeds() {
+    const bool flat = wave_.answer == Answer::synchronous;
+    if (wave_.fate != Fate::terminal && !flat && wave_.answer != Answer::incoherent) return;
+    wave_.slowness.reset();
+    wave_.fronts.clear();
+    if (flat && wave_.fate != Fate::terminal) set_lowest_speed();
   }
 
   void set_lowest_speed() {
@@ -304,8 +277,9 @@ class WaveOrigins {
   const OriginRules& rules_;
   double trend_;
   const Arrivals& arrivals_;
-  const FieldFit& fit_;
+  const SourceFit& fit_;
   const std::vector<Link>& links_;
+  const Candidates& candidates_;
   Findings findings_;
 };
 

@@ -79,6 +79,9 @@ StepDeclaration FindWavesStep::declaration() const {
       number("least_timing_error_frames", "1", 0, 1, "0.03",
              "Standard error in frame intervals that no entry time falls below, for what the fit "
              "of one nucleus cannot know of (focus, slow flow)."));
+  parameters.push_back(
+      whole("draws", 50, 10000, "400",
+            "Whole arrival fields drawn a wave; 400 hold a probability of 0.9 to 0.015."));
   return {"find-waves",
           "Gathers entries into waves and measures their fronts: period, fate, slowness, speed.",
           Scope::acquisition,
@@ -95,6 +98,8 @@ void FindWavesStep::process(AcquisitionWork& work) const {
   rules.longest_mitosis_min = parameters().number("longest_mitosis_min");
   rules.unseen_jitter_min = parameters().number("unseen_jitter_min");
   rules.least_se_min = parameters().number("least_timing_error_frames") * film.frame_interval_min();
+  rules.draws = parameters().integer("draws");
+  rules.seed = work.seed;
   rules.film_end_min = film.times_min.empty() ? 0 : film.times_min.back();
   if (film.overrides.last_healthy_min)
     rules.film_end_min = std::min(rules.film_end_min, *film.overrides.last_healthy_min);
@@ -108,20 +113,17 @@ void FindWavesStep::process(AcquisitionWork& work) const {
 
 StepDeclaration FindOriginsStep::declaration() const {
   auto parameters = neighbour_parameters();
-  parameters.push_back(
-      whole("draws", 50, 10000, "400",
-            "Whole arrival fields drawn a wave; 400 hold a probability of 0.9 to 0.015."));
   parameters.push_back(number("claim_probability", "1", 0.5, 1, "0.9",
                               "An origin, or several at once, is claimed from this probability "
                               "on."));
-  parameters.push_back(number("visible_p", "1", 0, 1, "0.02",
-                              "A tight wave shows a direction only when chance deals its times "
-                              "out so smoothly less often than this."));
+  parameters.push_back(number("visible_probability", "1", 0.5, 1, "0.95",
+                              "A wave shows a direction when its field varies by more than a third "
+                              "of jitter and timing error with this probability."));
   parameters.push_back(number("order_p", "1", 0, 1, "0.05",
                               "A scattered wave is incoherent when chance deals its times out so "
                               "smoothly more often than this."));
   parameters.push_back(
-      whole("permutations", 99, 100000, "999", "Random orders dealt out for those two shares."));
+      whole("permutations", 99, 100000, "999", "Random orders dealt out for that share."));
   parameters.push_back(number("scatter_min", "min", 0, 120, "",
                               "Spread (standard deviation) of entry times that the nuclei's jitter "
                               "alone explains; 8 % of the period when not given."));
@@ -139,9 +141,8 @@ void FindOriginsStep::process(AcquisitionWork& work) const {
   auto& records = *work.records;
   const auto& film = records.get<FilmDescription>();
   OriginRules rules;
-  rules.draws = parameters().integer("draws");
   rules.claim_probability = parameters().number("claim_probability");
-  rules.visible_p = parameters().number("visible_p");
+  rules.visible_probability = parameters().number("visible_probability");
   rules.order_p = parameters().number("order_p");
   rules.permutations = parameters().integer("permutations");
   rules.scatter_min = parameters().optional_number("scatter_min");

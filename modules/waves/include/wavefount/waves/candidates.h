@@ -1,18 +1,18 @@
 #pragma once
 
-#include <cstdint>
 #include <optional>
 #include <vector>
 
-#include "wavefount/waves/field.h"
+#include "wavefount/core/tube.h"
 #include "wavefount/waves/minima.h"
 #include "wavefount/waves/neighbours.h"
+#include "wavefount/waves/source_model.h"
 
 namespace wavefount {
 
 /// A place where many of the drawn fields have a minimum.
 struct Candidate {
-  int leader = 0;  ///< arrival nearest to the minimum in most draws
+  int leader = 0;  ///< arrival that comes first there in most draws
   Point place_um;  ///< mean over the draws, straightened
   double position_se_um = 0;
   double probability = 0;  ///< share of draws that have it
@@ -25,11 +25,9 @@ struct Candidate {
 };
 
 struct CandidateSearch {
-  int draws = 400;
   double spacing_um = 0;
-  double least_prominence_min = 0;
-  std::vector<char> at_view_edge;  ///< by arrival
-  std::uint64_t seed = 0;
+  const Tube* tube = nullptr;
+  bool wide = false;
 };
 
 /// What the drawn fields say together.
@@ -37,27 +35,20 @@ struct Candidates {
   std::vector<Candidate> found;     ///< most probable first; probability at least a twentieth
   double alone_probability = 0;     ///< of exactly one minimum, the first candidate
   double joint_probability = 0;     ///< of all candidates more likely than not, at once
-  double entering_probability = 0;  ///< of a minimum at an open edge of the view
-  std::vector<int> basin;  ///< by arrival: candidate more likely than not that it belongs to
+  double entering_probability = 0;  ///< of a front that comes in over an open edge
+  double visible_probability = 0;   ///< of a field that varies beyond a third of jitter and error
+  double range_min = 0;             ///< median over draws: latest less earliest place of the field
+  std::vector<int> basin;           ///< by arrival: the likeliest candidate, -1 for none
 };
 
-/// Draws whole fields from the posterior over nuclei and the middles of their links, finds the
-/// minima of each, and matches them: a draw has a candidate when its minimum lies within one
-/// spacing and the basins overlap by half.
-Candidates find_candidates(const Arrivals& arrivals, const FieldFit& fit,
+/// Finds the minima of every drawn field and matches them: a draw has a candidate when its minimum
+/// lies within one spacing and the basins overlap by half.
+Candidates find_candidates(const Arrivals& arrivals, const SourceFit& fit,
                            const std::vector<Link>& links, const CandidateSearch& search);
 
-/// Posterior mean of the field and its standard deviation at the arrivals' places.
-struct MeanField {
-  std::vector<double> mean_min, se_min;
-};
-MeanField mean_field(const Arrivals& arrivals, const FieldFit& fit);
-
-/// The graph over arrivals alone.
-FieldGraph field_graph(std::size_t places, const std::vector<Link>& links);
-
-/// Share of random smooth fields with the wave's fitted scales whose minimum lies at each arrival.
-std::vector<double> chance_of_first(const Arrivals& arrivals, const FieldFit& fit,
-                                    double trend_sd_min_per_um, int draws, std::uint64_t seed);
+/// Open edges of the view by arrival, as a sum of ViewEdge, from which no other nucleus of the wave
+/// parts it: the point of the edge nearest to it is nearer to no other.
+enum ViewEdge : unsigned { left_edge = 1, right_edge = 2, upper_edge = 4, lower_edge = 8 };
+std::vector<unsigned> view_edges(const Arrivals& arrivals, const Tube& tube, bool wide);
 
 }  // namespace wavefount

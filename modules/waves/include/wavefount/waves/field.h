@@ -3,20 +3,12 @@
 #include <Eigen/Core>
 #include <vector>
 
-#include "wavefount/core/film.h"
+#include "wavefount/waves/arrivals.h"
 #include "wavefount/waves/counter_random.h"
 
 namespace wavefount {
 
-/// The entries of one wave as the arrival field sees them. Places are straightened: x along the
-/// tube, y across, µm.
-struct Arrivals {
-  std::vector<Point> places_um;
-  std::vector<double> times_min, se_min;
-  bool plane = false;  ///< the trend has a slope across too
-};
-
-/// Scales of arrival field and jitter.
+/// Scales of a smooth random arrival field.
 struct FieldScale {
   double jitter_min = 0;           ///< of the nuclei around the field, standard deviation
   double gradient_min_per_um = 0;  ///< standard deviation of the field's slope about its trend
@@ -28,43 +20,11 @@ struct WeightedScale {
   double weight = 0;
 };
 
-/// What the entries of one wave say about the scales.
-struct FieldFit {
-  std::vector<WeightedScale> scales;  ///< posterior, weights sum to 1, largest first
-  std::vector<char> astray;           ///< by arrival: not of this field, left out of it
-  double jitter_min = 0;              ///< posterior mean
-};
-
-/// Arrival time = linear trend (flat prior) + Gaussian process (Matérn 3/2 covariance) + jitter +
-/// measurement error. The scales of every wave by restricted likelihood (Patterson & Thompson 1971)
-/// on a grid; the jitter is pooled over the waves: each wave's own is log-normal around the
-/// common one. Entries that the field from all the others makes less likely than a stray at
-/// any time within `period_min` are set aside.
-std::vector<FieldFit> fit_fields(const std::vector<Arrivals>& waves, double spacing_um,
-                                 double period_min);
-
-/// Posterior of the field at chosen places, for one set of scales (universal kriging: Stein 1999).
-class FieldPosterior {
- public:
-  FieldPosterior(const Arrivals& arrivals, const std::vector<char>& astray, const FieldScale& scale,
-                 const std::vector<Point>& places_um);
-  const Eigen::VectorXd& mean_min() const { return mean_; }
-  /// Posterior standard deviation at each place.
-  Eigen::VectorXd se_min() const;
-  /// One whole field; the same stream gives the same field.
-  Eigen::VectorXd draw(const CounterRandom& random, std::uint64_t stream) const;
-
- private:
-  Eigen::VectorXd mean_;
-  Eigen::MatrixXd root_;  ///< lower triangle; root · rootᵀ is the covariance
-};
-
-/// Prediction of each arrival from all the others: residual and its standard deviation (jitter and
-/// error included), averaged over the fit's scales. Those astray are predicted too.
-struct LeftOut {
-  double residual_min = 0, sd_min = 0;
-};
-std::vector<LeftOut> leave_one_out(const Arrivals& arrivals, const FieldFit& fit);
+/// Covariance of a wave's field at a given jitter: linear trend (flat prior) + Gaussian process
+/// (Matérn 3/2) + jitter + error, by restricted likelihood (Patterson & Thompson 1971) on a grid.
+/// Weights sum to 1, largest first. Arrivals astray take no part.
+std::vector<WeightedScale> fit_scales(const Arrivals& arrivals, const std::vector<char>& astray,
+                                      double jitter_min, double spacing_um);
 
 /// Restricted log likelihood of the arrivals under the scales, up to a constant.
 double restricted_likelihood(const Arrivals& arrivals, const FieldScale& scale);
@@ -79,5 +39,10 @@ class FieldPrior {
  private:
   Eigen::MatrixXd root_;
 };
+
+/// Share of random smooth fields with the wave's scales whose minimum lies at each arrival.
+std::vector<double> chance_of_first(const Arrivals& arrivals,
+                                    const std::vector<WeightedScale>& scales,
+                                    double trend_sd_min_per_um, int draws, std::uint64_t seed);
 
 }  // namespace wavefount

@@ -1,5 +1,7 @@
 #pragma once
 
+#include <cstdint>
+
 #include "wavefount/core/film.h"
 #include "wavefount/core/interphase.h"
 #include "wavefount/core/nucleus.h"
@@ -21,6 +23,8 @@ struct WaveRules {
   double unseen_jitter_min = 1;     ///< where no wave has five nuclei to tell the jitter from
   double least_se_min = 0;          ///< of an entry time, whatever its own standard error says
   double film_end_min = 0;
+  int draws = 400;  ///< whole fields a wave
+  std::uint64_t seed = 0;
 };
 
 struct WaveView {

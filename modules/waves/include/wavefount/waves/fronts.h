@@ -3,7 +3,7 @@
 #include <vector>
 
 #include "wavefount/core/wave.h"
-#include "wavefount/waves/field.h"
+#include "wavefount/waves/arrivals.h"
 
 namespace wavefount {
 

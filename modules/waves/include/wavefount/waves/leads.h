@@ -4,7 +4,6 @@
 #include <vector>
 
 #include "wavefount/core/wave.h"
-#include "wavefount/waves/field.h"
 
 namespace wavefount {
 
@@ -15,7 +14,7 @@ namespace wavefount {
 /// - leads / lags: before / after all its neighbours with a probability of at least 0.9 (a nucleus
 ///   at the end of the row lags nobody: the front ends there);
 /// - alone: no neighbours; with-front: everything else.
-void time_among_neighbours(const Wave& wave, WaveEntries& entries, const FieldFit& fit,
+void time_among_neighbours(const Wave& wave, WaveEntries& entries, const std::vector<char>& astray,
                            std::uint64_t seed);
 
 /// Probability of each entry to be the first of its wave under the timing errors.

@@ -3,31 +3,28 @@
 #include <optional>
 #include <vector>
 
+#include "wavefount/waves/neighbours.h"
+#include "wavefount/waves/source_model.h"
+
 namespace wavefount {
 
-/// One minimum of a field over a graph.
+/// One minimum of a drawn field.
 struct Minimum {
-  int place = 0;
-  double value = 0;
-  std::optional<double> prominence;  ///< saddle to an earlier basin less value; empty: the lowest
+  int source = 0;                    ///< position in the draw's sources
+  std::optional<double> prominence;  ///< saddle to an earlier basin less start; empty: the earliest
   bool behind_gap = false;           ///< the saddle is a bridge: nobody saw the front come over it
 };
 
 struct Basins {
-  std::vector<Minimum> minima;  ///< by rising value
-  std::vector<int> basin;       ///< by place: position in `minima`
+  std::vector<Minimum> minima;  ///< by rising start
+  std::vector<int> basin;       ///< by arrival: position in `minima`
 };
 
-/// A graph for fields: neighbours by place, and those among them that are reached over a gap.
-struct FieldGraph {
-  std::vector<std::vector<int>> neighbours;
-  std::vector<std::vector<char>> over_gap;  ///< same shape
-};
-
-/// Minima by persistence of sublevel sets (Edelsbrunner, Letscher & Zomorodian 2002): a minimum
-/// whose saddle towards an earlier basin lies less than `least_prominence` above it is part of that
-/// basin. Parts that are not connected have each their own lowest minimum.
-Basins find_minima(const std::vector<double>& field, const FieldGraph& graph,
-                   double least_prominence);
+/// The minima of a drawn field by persistence of sublevel sets (Edelsbrunner, Letscher & Zomorodian
+/// 2002). Fronts of two sources meet first over the link of neighbours on which they collide
+/// earliest; a source whose saddle towards an earlier one lies less than `least_prominence_min`
+/// after its start is part of that basin. Sources without nuclei of their own are not seen.
+Basins find_minima(const SourceDraw& draw, const std::vector<Link>& links,
+                   double least_prominence_min);
 
 }  // namespace wavefount

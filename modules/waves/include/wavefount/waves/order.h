@@ -3,7 +3,7 @@
 #include <cstdint>
 #include <vector>
 
-#include "wavefount/waves/field.h"
+#include "wavefount/waves/arrivals.h"
 #include "wavefount/waves/neighbours.h"
 
 namespace wavefount {

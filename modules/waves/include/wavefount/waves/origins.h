@@ -7,16 +7,14 @@
 #include "wavefount/core/tube.h"
 #include "wavefount/core/wave.h"
 #include "wavefount/waves/arrival_fields.h"
-#include "wavefount/waves/candidates.h"
 #include "wavefount/waves/chronology.h"
 
 namespace wavefount {
 
 struct OriginRules {
-  int draws = 400;                 ///< whole fields a wave
-  double claim_probability = 0.9;  ///< of the contract's `single` and `coexisting`
-  double order_p = 0.05;           ///< above it a scattered wave is incoherent
-  double visible_p = 0.02;         ///< above it a tight wave is synchronous
+  double claim_probability = 0.9;     ///< of the contract's `single` and `coexisting`
+  double order_p = 0.05;              ///< above it a scattered wave is incoherent
+  double visible_probability = 0.95;  ///< of a field beyond jitter and error
   int permutations = 999;
   std::optional<double> scatter_min;  ///< what jitter alone explains; empty: 8 % of the period
   double frame_interval_min = 0;

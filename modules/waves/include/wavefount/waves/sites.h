@@ -4,7 +4,6 @@
 
 #include "wavefount/core/tube.h"
 #include "wavefount/core/wave.h"
-#include "wavefount/waves/field.h"
 
 namespace wavefount {
 
