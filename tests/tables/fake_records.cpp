@@ -224,6 +224,11 @@ Interphase interphase_of(const Scene& scene, const Place& place, int nucleus, in
   interphase.nucleus = nucleus;
   interphase.index = wave;
   interphase.start = wave == 0 ? Start::already_present : Start::seen;
+  interphase.first_frame =
+      wave == 0
+          ? 0
+          : static_cast<int>((entry - scene.period_min + mitosis_min) / scene.interval_min) + 1;
+  interphase.last_frame = std::min(static_cast<int>(entry / scene.interval_min), scene.frames - 1);
   interphase.place_um = on_image(scene, place);
   interphase.brightness_mean = 0.7 * plateau;
   interphase.brightness_peak = 0.97 * plateau;

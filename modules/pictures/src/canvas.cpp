@@ -18,6 +18,7 @@ const Colour ground = srgb_of(lab_of(0.965, 0.006, 230));
 const Colour white = {1, 1, 1};
 const Colour mark = srgb_of(lab_of(0.72, 0.17, 55));
 const Colour second_mark = srgb_of(lab_of(0.48, 0.11, 245));
+const Colour star = srgb_of(lab_of(0.90, 0.17, 100));
 const Colour glass = srgb_of(lab_of(0.70, 0.03, 230));
 
 }  // namespace palette

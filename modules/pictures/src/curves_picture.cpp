@@ -5,7 +5,6 @@
 #include "scene_of.h"
 #include "wavefount/core/interphase.h"
 #include "wavefount/core/robust.h"
-#include "wavefount/core/text.h"
 #include "wavefount/pictures/pictures.h"
 #include "wavefount/pictures/plot.h"
 
@@ -14,7 +13,7 @@ namespace {
 
 constexpr int picture_width = 1600;
 constexpr double left = 130;
-constexpr double top = 104;
+constexpr double top = 124;
 constexpr double right = 40;
 constexpr double curve_height = 190;
 constexpr double curve_gap = 40;
@@ -210,16 +209,14 @@ class CurvesPicture {
 
   /// Two digits of the standard error, and the time to as many decimals.
   static std::string label_of(const Entry& entry) {
-    if (!(entry.se_min > 0)) return rounded_text(entry.time_min, 5);
+    if (!(entry.se_min > 0)) return fixed_text(entry.time_min, 2);
     const int decimals =
         std::clamp(1 - static_cast<int>(std::floor(std::log10(entry.se_min))), 0, 4);
-    const double power = std::pow(10, decimals);
-    return rounded_text(std::round(entry.time_min * power) / power, 8) + " ± " +
-           rounded_text(entry.se_min, 2);
+    return fixed_text(entry.time_min, decimals) + " ± " + fixed_text(entry.se_min, decimals);
   }
 
   void legend() {
-    constexpr double y = 68;
+    constexpr double y = 72;
     double x = left;
     const auto entry = [&](const std::string& words) {
       canvas_.set(palette::ink);

@@ -131,10 +131,13 @@ class KymographPicture {
 
   void origins(const Wave& wave) {
     for (const auto& origin : wave.origins) {
+      if (!worth_a_mark(origin)) continue;
       const Point at = plot_.at(origin.along_um, origin.entry_min);
-      draw_star(canvas_, at, origin.claimed, 15);
-      canvas_.text_on_picture({at.x, at.y - 19}, probability_text(origin.probability), small_size,
-                              palette::white, Anchor::middle);
+      const double radius = origin.claimed ? 15 : 10;
+      draw_origin(canvas_, at, origin.claimed, radius);
+      const double inside = std::clamp(at.x, field.x + 24, field.x + field.width - 24);
+      canvas_.text_on_picture({inside, at.y - radius - 5}, probability_text(origin.probability),
+                              small_size, palette::white, Anchor::middle);
     }
   }
 
@@ -169,23 +172,26 @@ class KymographPicture {
     double y = field.y + 16;
     const auto entry = [&](const std::string& words) {
       canvas_.set(palette::ink);
-      canvas_.text({side + 56, y + 5}, words, small_size + 1);
+      canvas_.text({side + 62, y + 5}, words, small_size + 1);
       y += 34;
     };
     canvas_.set(palette::ink);
     canvas_.text({side, y}, waves().empty() ? "No waves found" : "Bold numbers: waves",
                  small_size + 1, Anchor::start, !waves().empty());
     y += 34;
-    canvas_.disc({side + 28, y}, 6, palette::mark, palette::ink, 1.2);
+    canvas_.set(light_map()(0.15));
+    cairo_rectangle(canvas_.cairo(), side, y - 17, 50, 4 * 34);
+    cairo_fill(canvas_.cairo());
+    canvas_.disc({side + 25, y}, 6, palette::mark, palette::ink, 1.2);
     entry("mitotic entry");
     canvas_.set(palette::ink, 0.8);
-    canvas_.line({side + 8, y}, {side + 48, y}, 6);
+    canvas_.line({side + 7, y}, {side + 43, y}, 6);
     canvas_.set(palette::white);
-    canvas_.line({side + 8, y}, {side + 48, y}, 2.6);
+    canvas_.line({side + 7, y}, {side + 43, y}, 2.6);
     entry("fitted front");
-    draw_star(canvas_, {side + 28, y}, true, 13);
+    draw_origin(canvas_, {side + 25, y}, true, 11);
     entry("origin, its probability");
-    draw_star(canvas_, {side + 28, y}, false, 13);
+    draw_origin(canvas_, {side + 25, y}, false, 8);
     entry("candidate, not claimed");
   }
 

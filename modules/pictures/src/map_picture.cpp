@@ -79,16 +79,14 @@ class MapPicture {
   Canvas draw() {
     for (int i = 0; i < shown_; ++i) wave_panel(i);
     if (shown_ == 0) plain_panel();
-    const double used = panels_.rows * (panels_.cell_height + 24) - 24;
-    scale_bar(canvas_, {left + 6, top + used + 46}, panels_.scale, 260, palette::ink);
+    scale_bar(canvas_, {left + 6, top + panels_.height() + 46}, panels_.scale, 260, palette::ink);
     legend();
     return std::move(canvas_);
   }
 
  private:
   static int height_of(const Panels& panels) {
-    const double used = panels.rows * (panels.cell_height + 24) - 24;
-    return static_cast<int>(std::max(top + used + foot, top + legend_height));
+    return static_cast<int>(top + std::max(panels.height() + foot, legend_height));
   }
 
   Point on(int panel, Point um) const {
@@ -121,7 +119,7 @@ class MapPicture {
     }
   }
 
-  double radius_px() const { return std::clamp(radius_um_ * panels_.scale, 4.0, 22.0); }
+  double radius_px() const { return std::clamp(radius_um_ * panels_.scale, 5.0, 22.0); }
 
   void panel_title(int panel, const std::string& bold, const std::string& words) {
     const Point corner = panels_.corner(panel);
@@ -154,14 +152,16 @@ class MapPicture {
   }
 
   void mark(int panel, const Origin& origin) {
+    if (!worth_a_mark(origin)) return;
     const Point at = on(panel, {origin.x_um, origin.y_um});
-    draw_star(canvas_, at, origin.claimed, std::max(11.0, 0.8 * radius_px()));
-    canvas_.text_on_picture({at.x + 16, at.y + 5}, probability_text(origin.probability), small_size,
-                            palette::ink);
+    const double radius = std::max(12.0, 1.3 * radius_px());
+    draw_origin(canvas_, at, origin.claimed, radius);
+    canvas_.text_on_picture({at.x, at.y - radius - 3}, probability_text(origin.probability),
+                            small_size, palette::ink, Anchor::middle);
   }
 
   static std::string words_of(const Wave& wave) {
-    std::string words = "from " + rounded_text(std::round(10 * wave.start_min) / 10, 6) + " min, " +
+    std::string words = "from " + fixed_text(wave.start_min, 1) + " min, " +
                         std::to_string(wave.entries.size()) + " nuclei, " + name_of(wave.answer);
     if (wave.slowness && wave.slowness->speed_um_per_min)
       words += ", " + rounded_text(*wave.slowness->speed_um_per_min, 3) + " µm/min";
@@ -192,10 +192,10 @@ class MapPicture {
     if (shown_ > 0) {
       canvas_.disc({x + 14, y}, 7, palette::white, palette::grey, 1);
       entry("not in this wave");
-      draw_star(canvas_, {x + 14, y}, true, 12);
+      draw_origin(canvas_, {x + 14, y}, true, 12);
       entry("origin, its probability");
-      draw_star(canvas_, {x + 14, y}, false, 12);
-      entry("candidate");
+      draw_origin(canvas_, {x + 14, y}, false, 9);
+      entry("candidate, not claimed");
     }
     const int more = static_cast<int>(waves_.size()) - shown_;
     if (more > 0) entry("and " + std::to_string(more) + " more waves");

@@ -56,7 +56,7 @@ class MontagePicture {
 
  private:
   static int height_of(const Panels& panels) {
-    return static_cast<int>(top + panels.rows * (panels.cell_height + 24) - 24 + foot);
+    return static_cast<int>(top + panels.height() + foot);
   }
 
   /// Evenly spread over the usable frames, the first and the last included.

@@ -1,8 +1,6 @@
 #include "pixels.h"
 
-#include <cmath>
-
-#include "wavefount/core/text.h"
+#include <numbers>
 
 namespace wavefount {
 
@@ -30,25 +28,36 @@ void PixelImage::paint(Canvas& canvas, const Box& box) {
   cairo_surface_destroy(surface);
 }
 
-void draw_star(Canvas& canvas, Point at, bool claimed, double radius) {
+void draw_origin(Canvas& canvas, Point at, bool claimed, double radius) {
   auto* cairo = canvas.cairo();
-  canvas.star_path(at, radius);
+  if (claimed) {
+    canvas.star_path(at, radius);
+    canvas.set(palette::ink);
+    cairo_set_line_width(cairo, 4);
+    cairo_stroke_preserve(cairo);
+    canvas.set(palette::star);
+    cairo_fill(cairo);
+    return;
+  }
+  cairo_new_path(cairo);
+  cairo_arc(cairo, at.x, at.y, radius, 0, 2 * std::numbers::pi);
   canvas.set(palette::ink);
-  cairo_set_line_width(cairo, claimed ? 3 : 6);
+  cairo_set_line_width(cairo, 5);
   cairo_stroke_preserve(cairo);
   canvas.set(palette::white);
-  cairo_set_line_width(cairo, 2.5);
-  if (claimed)
-    cairo_fill(cairo);
-  else
-    cairo_stroke(cairo);
-  cairo_new_path(cairo);
+  cairo_set_line_width(cairo, 2.2);
+  cairo_stroke(cairo);
+}
+
+bool worth_a_mark(const Origin& origin) {
+  constexpr double least_probability = 0.05;
+  return origin.claimed || origin.probability >= least_probability;
 }
 
 std::string probability_text(double probability) {
   if (probability > 0.995) return "> 0.99";
   if (probability < 0.005) return "< 0.01";
-  return rounded_text(std::round(100 * probability) / 100, 2);
+  return fixed_text(probability, 2);
 }
 
 }  // namespace wavefount

@@ -4,6 +4,7 @@
 #include <string>
 #include <vector>
 
+#include "wavefount/core/wave.h"
 #include "wavefount/pictures/plot.h"
 
 namespace wavefount {
@@ -24,8 +25,10 @@ class PixelImage {
   std::vector<std::uint32_t> pixels_;
 };
 
-/// The mark of an origin: filled where claimed, hollow where a candidate.
-void draw_star(Canvas& canvas, Point at, bool claimed, double radius);
+/// The mark of an origin: a filled star where claimed, a ring where a candidate.
+void draw_origin(Canvas& canvas, Point at, bool claimed, double radius);
+/// Whether a picture shows it: candidates of next to no probability stay in the table.
+bool worth_a_mark(const Origin& origin);
 /// Two decimals, and never a made-up certainty: "> 0.99" above 0.995.
 std::string probability_text(double probability);
 

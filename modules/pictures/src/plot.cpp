@@ -1,6 +1,8 @@
 #include "wavefount/pictures/plot.h"
 
 #include <algorithm>
+#include <array>
+#include <charconv>
 #include <cmath>
 
 #include "wavefount/core/text.h"
@@ -21,6 +23,15 @@ double step_of(const std::vector<double>& ticks) {
 }
 
 }  // namespace
+
+std::string fixed_text(double value, int decimals) {
+  if (!std::isfinite(value)) return "unknown";
+  std::array<char, 400> text{};  // the largest double has 309 digits
+  const auto end = std::to_chars(text.data(), text.data() + text.size(), value,
+                                 std::chars_format::fixed, decimals)
+                       .ptr;
+  return {text.data(), end};
+}
 
 double round_below(double value) {
   if (!(value > 0) || !std::isfinite(value)) return 1;

@@ -10,6 +10,22 @@ namespace wavefount {
 namespace {
 
 constexpr double gap = 24;  // pixels between panels
+/// Panels of this share of the largest possible size are taken where they fill the width better.
+constexpr double good_enough = 0.75;
+
+Panels arranged_in(int columns, int count, double width, double height, const Box& room,
+                   double heading) {
+  Panels panels;
+  panels.columns = columns;
+  panels.rows = (count + columns - 1) / columns;
+  panels.cell_width = (room.width - (columns - 1) * gap) / columns;
+  const double cell_height = (room.height - (panels.rows - 1) * gap) / panels.rows - heading;
+  panels.scale = std::min(panels.cell_width / width, cell_height / height);
+  panels.cell_height = height * panels.scale + heading;
+  panels.origin = {room.x, room.y};
+  panels.heading = heading;
+  return panels;
+}
 
 Tube field_of(const FilmDescription& film) {
   const double pixel_um = pixel_um_of(film);
@@ -55,29 +71,26 @@ Box bounds_of(const Polygon& polygon) {
   return {low.x, low.y, high.x - low.x, high.y - low.y};
 }
 
+double Panels::height() const {
+  return rows * cell_height + (rows - 1) * gap;
+}
+
 Point Panels::corner(int panel) const {
   return {origin.x + (panel % columns) * (cell_width + gap),
           origin.y + (panel / columns) * (cell_height + gap) + heading};
 }
 
 Panels arrange(int count, double width, double height, const Box& room, double heading) {
-  Panels best;
-  best.scale = 0;
-  for (int columns = 1; columns <= std::max(count, 1); ++columns) {
-    const int rows = (std::max(count, 1) + columns - 1) / columns;
-    const double cell_width = (room.width - (columns - 1) * gap) / columns;
-    const double cell_height = (room.height - (rows - 1) * gap) / rows - heading;
-    const double scale = std::min(cell_width / width, cell_height / height);
-    if (scale <= best.scale) continue;
-    best.columns = columns;
-    best.rows = rows;
-    best.scale = scale;
-    best.cell_width = cell_width;
-    best.cell_height = height * scale + heading;
+  count = std::max(count, 1);
+  double largest = 0;
+  for (int columns = 1; columns <= count; ++columns)
+    largest = std::max(largest, arranged_in(columns, count, width, height, room, heading).scale);
+  Panels chosen;
+  for (int columns = 1; columns <= count; ++columns) {
+    const auto panels = arranged_in(columns, count, width, height, room, heading);
+    if (panels.scale >= good_enough * largest) chosen = panels;
   }
-  best.origin = {room.x, room.y};
-  best.heading = heading;
-  return best;
+  return chosen;
 }
 
 }  // namespace wavefount

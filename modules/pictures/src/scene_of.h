@@ -28,13 +28,16 @@ struct Panels {
   double cell_width = 0, cell_height = 0;
   Point origin;  ///< of the first cell
 
+  /// Of all rows together.
+  double height() const;
   /// Top left of a panel's content.
   Point corner(int panel) const;
   double heading = 0;
 };
 
-/// Arranges `count` panels of content `width` × `height` in a picture so that they are as large as
-/// can be; each has a heading above it. `room`: where they may lie; its height is an upper limit.
+/// Arranges `count` panels of content `width` × `height` in a picture so that they are about as
+/// large as can be, in few rows; each has a heading above it. `room`: where they may lie; its
+/// height is an upper limit.
 Panels arrange(int count, double width, double height, const Box& room, double heading);
 
 }  // namespace wavefount

@@ -57,7 +57,7 @@ class Canvas {
 
 /// Colours that all pictures share.
 namespace palette {
-extern const Colour ink, grey, faint, ground, white, mark, second_mark, glass;
+extern const Colour ink, grey, faint, ground, white, mark, second_mark, star, glass;
 }
 
 }  // namespace wavefount

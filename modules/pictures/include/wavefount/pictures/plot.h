@@ -21,6 +21,9 @@ std::vector<double> round_ticks(Range range, int wanted);
 /// Largest of 1, 2, 5 times a power of ten that is not above the value; for scale bars.
 double round_below(double value);
 
+/// With a fixed number of decimals, as in a table; "unknown" for a value that is not finite.
+std::string fixed_text(double value, int decimals);
+
 /// A field in which data are drawn: left to right along x; y goes down where `downwards`.
 class Plot {
  public:
