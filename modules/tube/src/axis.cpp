@@ -36,8 +36,8 @@ void set_directions(Axis& axis, bool closed, double side) {
   axis.normals.clear();
   for (std::ptrdiff_t i = 0; i < count; ++i) {
     const auto at = [&](std::ptrdiff_t k) {
-      const auto wrapped = closed ? (k % count + count) % count
-                                  : std::clamp<std::ptrdiff_t>(k, 0, count - 1);
+      const auto wrapped =
+          closed ? (k % count + count) % count : std::clamp<std::ptrdiff_t>(k, 0, count - 1);
       return axis.points[static_cast<std::size_t>(wrapped)];
     };
     const Point before = at(i - reach);
@@ -104,8 +104,8 @@ Axis extended(const Axis& axis, double by_px, double over_px) {
   Axis longer;
   const int steps = std::max(1, static_cast<int>(std::lround(by_px)));
   for (int k = steps; k > 0; --k)
-    longer.points.push_back({axis.points.front().x + k * first.x,
-                             axis.points.front().y + k * first.y});
+    longer.points.push_back(
+        {axis.points.front().x + k * first.x, axis.points.front().y + k * first.y});
   longer.points.insert(longer.points.end(), axis.points.begin(), axis.points.end());
   for (int k = 1; k <= steps; ++k)
     longer.points.push_back({axis.points.back().x + k * last.x, axis.points.back().y + k * last.y});
@@ -166,8 +166,7 @@ Straightened averaged_along(const Straightened& straightened, int reach) {
         ++count;
       }
       out.values.at<float>(row, column) =
-          count > reach ? static_cast<float>(sum / count)
-                        : std::numeric_limits<float>::quiet_NaN();
+          count > reach ? static_cast<float>(sum / count) : std::numeric_limits<float>::quiet_NaN();
     }
   }
   return out;

@@ -54,8 +54,8 @@ void bin_mean(const Image& full, int factor, int left, int top, Image& reduced) 
   std::vector<float> line(static_cast<std::size_t>(span));
   const float scale = 1.0F / static_cast<float>(factor * factor);
   for (int y = 0; y < height; ++y) {
-    const float* row = full.GetBufferPointer() +
-                       static_cast<std::ptrdiff_t>(top + y * factor) * full_width + left;
+    const float* row =
+        full.GetBufferPointer() + static_cast<std::ptrdiff_t>(top + y * factor) * full_width + left;
     std::copy(row, row + span, line.begin());
     for (int k = 1; k < factor; ++k) {
       const float* next = row + static_cast<std::ptrdiff_t>(k) * full_width;

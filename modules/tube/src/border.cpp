@@ -6,6 +6,7 @@
 #include <optional>
 
 #include "wavefount/core/robust.h"
+#include "wavefount/tube/section.h"
 #include "wavefount/tube/smooth.h"
 
 namespace wavefount::tube {
@@ -73,8 +74,7 @@ double crossing(const Straightened& profiles, int row, double expected, double r
     const double here = line[column];
     const double next = line[column + 1];
     if (!(here >= threshold && next < threshold)) continue;
-    const double at =
-        profiles.across(column) + profiles.step * (here - threshold) / (here - next);
+    const double at = profiles.across(column) + profiles.step * (here - threshold) / (here - next);
     if (std::abs(at - expected) >= nearest) continue;
     nearest = std::abs(at - expected);
     best = at;
@@ -82,32 +82,43 @@ double crossing(const Straightened& profiles, int row, double expected, double r
   return best;
 }
 
-/// Mean profile around the curve, levels removed profile by profile.
-void correct_glow(const Straightened& profiles, const BorderSearch& search, const Levels& levels,
-                  Border& border) {
-  constexpr double step = 0.25;
-  const double before = search.blur + std::min(search.inside_depth, 8.0);
-  const double after = search.blur + std::min(search.outside_depth, 8.0);
-  const auto bins = static_cast<std::size_t>((before + after) / step) + 1;
-  std::vector<std::vector<double>> stacked(bins);
-  for (std::size_t i = 0; i < border.position.size(); ++i) {
-    const double contrast = levels.inside[i] - levels.outside[i];
-    if (border.weight[i] <= 0 || contrast <= 0) continue;
-    const float* line = profiles.values.ptr<float>(static_cast<int>(i));
-    for (int column = 0; column < profiles.values.cols; ++column) {
-      const double at = profiles.across(column) - border.position[i] + before;
-      if (at < 0 || at >= before + after || !std::isfinite(line[column])) continue;
-      const auto bin = static_cast<std::size_t>(std::lround(at / step));
-      if (bin < bins) stacked[bin].push_back((line[column] - levels.outside[i]) / contrast);
+double interpolated(const float* line, int columns, double at) {
+  const int left = static_cast<int>(std::floor(at));
+  if (left < 0 || left + 1 >= columns) return none;
+  const double part = at - left;
+  return (1 - part) * line[left] + part * line[left + 1];
+}
+
+/// Mean profile across the curve, levels removed profile by profile; values that too few profiles
+/// hold end it.
+EdgeProfile stacked(const Straightened& profiles, const BorderSearch& search, const Levels& levels,
+                    const Border& border) {
+  // Nearer to the axis than this the profile tells nothing of the edge.
+  constexpr double axis_share = 0.1;
+  EdgeProfile edge;
+  edge.half_width = search.half_width;
+  edge.first = search.half_width ? -(1 - axis_share) * *search.half_width
+                                 : -search.blur - std::min(search.inside_depth, 12.0);
+  const double last = search.blur + search.outside_depth;
+  for (double away = edge.first; away <= last; away += edge.step) {
+    std::vector<double> values;
+    for (std::size_t i = 0; i < border.position.size(); ++i) {
+      const double contrast = levels.inside[i] - levels.outside[i];
+      if (border.weight[i] <= 0 || contrast <= 0) continue;
+      const double value =
+          interpolated(profiles.values.ptr<float>(static_cast<int>(i)), profiles.values.cols,
+                       (border.position[i] + away + profiles.half) / profiles.step);
+      if (std::isfinite(value)) values.push_back((value - levels.outside[i]) / contrast);
     }
+    if (values.size() < 5) {
+      if (away > 0) break;
+      edge.first = away + edge.step;
+      edge.values.clear();
+      continue;
+    }
+    edge.values.push_back(median(std::move(values)));
   }
-  std::vector<double> profile;
-  for (auto& bin : stacked) {
-    if (bin.size() < 5) return;
-    profile.push_back(median(std::move(bin)));
-  }
-  const double offset = glow_offset(profile, step, before, 1, 0);
-  for (auto& one : border.position) one -= offset;
+  return edge;
 }
 
 }  // namespace
@@ -132,8 +143,8 @@ Border find_border(const Straightened& given, const BorderSearch& search) {
       continue;
     }
     const int row = static_cast<int>(i);
-    const double at = crossing(profiles, row, expected, search.reach,
-                               (levels.inside[i] + levels.outside[i]) / 2);
+    const double at =
+        crossing(profiles, row, expected, search.reach, (levels.inside[i] + levels.outside[i]) / 2);
     if (std::isfinite(at)) {
       border.position[i] = at;
       border.weight[i] = 1;
@@ -153,7 +164,9 @@ Border find_border(const Straightened& given, const BorderSearch& search) {
   for (std::size_t i = 0; i < count; ++i)
     if (had[i] > 0) rests.push_back(raw[i] - border.position[i]);
   border.roughness = robust_sd(rests);
-  if (found >= 8) correct_glow(profiles, search, levels, border);
+  if (found < 8) return border;
+  const double offset = edge_offset(stacked(profiles, search, levels, border));
+  for (auto& one : border.position) one += offset;
   return border;
 }
 

@@ -43,14 +43,14 @@ Polygon subpixel_contour(const std::vector<cv::Point>& contour, const cv::Mat& s
     const cv::Point2d away = cv::Point2d(one) - centre;
     const double length = std::hypot(away.x, away.y);
     if (length <= 0) continue;
-    const int x = std::clamp(static_cast<int>(std::lround(one.x + away.x / length)), 0,
-                             share.cols - 1);
-    const int y = std::clamp(static_cast<int>(std::lround(one.y + away.y / length)), 0,
-                             share.rows - 1);
+    const int x =
+        std::clamp(static_cast<int>(std::lround(one.x + away.x / length)), 0, share.cols - 1);
+    const int y =
+        std::clamp(static_cast<int>(std::lround(one.y + away.y / length)), 0, share.rows - 1);
     const float here = share.at<float>(one);
     const float next = share.at<float>(y, x);
-    const double part = next > here ? std::clamp((bubble_level - here) / (next - here), 0.F, 1.F)
-                                    : 0.5;
+    const double part =
+        next > here ? std::clamp((bubble_level - here) / (next - here), 0.F, 1.F) : 0.5;
     polygon.push_back({one.x + part * away.x / length, one.y + part * away.y / length});
   }
   return simplified(polygon, 0.2);

@@ -34,8 +34,7 @@ void fill_gaps(Track& track) {
         if (before < 0 && i == count) return;
         const double left = values[static_cast<std::size_t>(before < 0 ? i : before)];
         const double right = values[static_cast<std::size_t>(i == count ? before : i)];
-        const double part =
-            static_cast<double>(k - before) / static_cast<double>(i - before);
+        const double part = static_cast<double>(k - before) / static_cast<double>(i - before);
         values[static_cast<std::size_t>(k)] = left + part * (right - left);
       };
       fill(track.x);
@@ -100,8 +99,7 @@ std::vector<int> find_jumps(const Track& track, double limit) {
   const auto count = static_cast<std::ptrdiff_t>(track.x.size());
   for (std::ptrdiff_t i = 1; i < count; ++i) {
     const auto at = static_cast<std::size_t>(i);
-    const double step =
-        std::hypot(track.x[at] - track.x[at - 1], track.y[at] - track.y[at - 1]);
+    const double step = std::hypot(track.x[at] - track.x[at - 1], track.y[at] - track.y[at - 1]);
     if (step <= limit / 2) continue;
     const auto before = median_place(track, i - side_frames, i - 1);
     const auto after = median_place(track, i, i + side_frames - 1);
@@ -179,8 +177,7 @@ class LevelSmoother {
       const double gain = variance[i] / (variance[i] + walk_);
       level[i] += gain * (level[i + 1] - level[i]);
     }
-    std::copy(level.begin(), level.end(),
-              values_.begin() + static_cast<std::ptrdiff_t>(first));
+    std::copy(level.begin(), level.end(), values_.begin() + static_cast<std::ptrdiff_t>(first));
   }
 
   const Track& track_;
@@ -221,8 +218,8 @@ Drift settle_drift(const std::vector<FrameObservation>& frames, const DriftSetti
 double farthest_px(const Drift& drift) {
   double farthest = 0;
   for (std::size_t i = 0; i < drift.x_px.size(); ++i)
-    farthest = std::max(farthest, std::hypot(drift.x_px[i] - drift.x_px[0],
-                                             drift.y_px[i] - drift.y_px[0]));
+    farthest = std::max(farthest,
+                        std::hypot(drift.x_px[i] - drift.x_px[0], drift.y_px[i] - drift.y_px[0]));
   return farthest;
 }
 

@@ -21,8 +21,8 @@ constexpr double most_at_border = 0.05;
 
 struct Ellipse {
   Eigen::Vector2d centre;
-  Eigen::Matrix2d axes;      ///< columns: minor, major direction
-  Eigen::Vector2d half;      ///< minor, major half axis
+  Eigen::Matrix2d axes;  ///< columns: minor, major direction
+  Eigen::Vector2d half;  ///< minor, major half axis
 };
 
 Ellipse ellipse_of(const cv::Mat& region) {
@@ -56,9 +56,9 @@ double overlap(const cv::Mat& region, const Ellipse& ellipse) {
 std::vector<cv::Point> longest_contour(const cv::Mat& region) {
   std::vector<std::vector<cv::Point>> contours;
   cv::findContours(region.clone(), contours, cv::RETR_EXTERNAL, cv::CHAIN_APPROX_NONE);
-  const auto longest = std::max_element(
-      contours.begin(), contours.end(),
-      [](const auto& a, const auto& b) { return a.size() < b.size(); });
+  const auto longest =
+      std::max_element(contours.begin(), contours.end(),
+                       [](const auto& a, const auto& b) { return a.size() < b.size(); });
   return longest == contours.end() ? std::vector<cv::Point>() : *longest;
 }
 
@@ -144,9 +144,8 @@ TubeShape measure_embryo(const cv::Mat& image, const cv::Mat& region, const Shap
   search.outside_level = request.outside_level;
   search.blur = std::max(2.0, request.thin / 2);
   search.cutoff = std::max(8.0, ellipse.half[0] / 2);
-  const auto profiles =
-      straighten(image, stations,
-                 search.reach + search.blur + std::max(search.inside_depth, 12.0), 0.5);
+  const auto profiles = straighten(
+      image, stations, search.reach + search.blur + std::max(search.inside_depth, 12.0), 0.5);
   const auto border = find_border(profiles, search);
   TubeShape shape;
   shape.wide = true;
@@ -158,8 +157,7 @@ TubeShape measure_embryo(const cv::Mat& image, const cv::Mat& region, const Shap
   double low = 0;
   double high = 0;
   for (const auto& one : shape.outline) {
-    const double across =
-        (Eigen::Vector2d(one.x, one.y) - ellipse.centre).dot(ellipse.axes.col(0));
+    const double across = (Eigen::Vector2d(one.x, one.y) - ellipse.centre).dot(ellipse.axes.col(0));
     low = std::min(low, across);
     high = std::max(high, across);
   }

@@ -16,7 +16,8 @@
 namespace wavefount::tube {
 namespace {
 
-/// Inside over outside, in units of the noise of a smoothed pixel, below which outlines are doubted.
+/// Inside over outside, in units of the noise of a smoothed pixel, below which outlines are
+/// doubted.
 constexpr double doubted_contrast_to_noise = 6;
 /// A tube beside brighter ones shows at least this share of their contrast.
 constexpr double dimmest_share = 0.15;
@@ -53,8 +54,7 @@ struct Found {
 cv::Mat field_image(const LevelField& field, cv::Size size) {
   cv::Mat image(size, CV_32FC1);
   for (int y = 0; y < size.height; ++y)
-    for (int x = 0; x < size.width; ++x)
-      image.at<float>(y, x) = static_cast<float>(field.at(x, y));
+    for (int x = 0; x < size.width; ++x) image.at<float>(y, x) = static_cast<float>(field.at(x, y));
   return image;
 }
 
@@ -130,8 +130,7 @@ class TubeFinder {
   void blank_out(const cv::Mat& region, const cv::Mat& outside, cv::Mat& rest) const {
     const int side = 2 * static_cast<int>(std::lround(2 * request_.thin)) + 1;
     cv::Mat wider;
-    cv::dilate(region, wider,
-               cv::getStructuringElement(cv::MORPH_ELLIPSE, cv::Size(side, side)));
+    cv::dilate(region, wider, cv::getStructuringElement(cv::MORPH_ELLIPSE, cv::Size(side, side)));
     outside.copyTo(rest, wider);
   }
 
@@ -154,8 +153,8 @@ class TubeFinder {
   void order() {
     if (found_.empty()) return;
     const auto& axis = found_.front().shape.axis;
-    const bool upright = std::abs(axis.back().y - axis.front().y) >
-                         std::abs(axis.back().x - axis.front().x);
+    const bool upright =
+        std::abs(axis.back().y - axis.front().y) > std::abs(axis.back().x - axis.front().x);
     const auto place = [&](const Found& one) {
       const auto m = cv::moments(one.region, true);
       return upright ? m.m10 / m.m00 : m.m01 / m.m00;
@@ -227,9 +226,9 @@ std::string described(const Tube& tube) {
          " µm long in view; left end " + kind(tube.left_end) + ", right end " +
          kind(tube.right_end) + ", upper wall " + kind(tube.upper_wall) + ", lower wall " +
          kind(tube.lower_wall) +
-         (tube.holes_um.empty() ? std::string(".")
-                                : "; " + std::to_string(tube.holes_um.size()) +
-                                      " bubble(s) or excluded region(s).");
+         (tube.holes_um.empty()
+              ? std::string(".")
+              : "; " + std::to_string(tube.holes_um.size()) + " bubble(s) or excluded region(s).");
 }
 
 }  // namespace

@@ -15,6 +15,9 @@ namespace {
 
 /// A chained shift is replaced by the direct one when that is confirmed at least this well.
 constexpr double trusted_agreement = 0.6;
+/// Nuclei form, move and vanish between keyframes: they tell of the stage only when this share of
+/// their edges lies upon others.
+constexpr double nuclei_agreement = 0.65;
 /// Once with the shifts of the chain, twice with those against the median image.
 constexpr int median_rounds = 2;
 
@@ -85,18 +88,39 @@ void put(const Shift& shift, std::size_t k, AlignedImages& aligned) {
   aligned.agreement[k] = shift.agreement;
 }
 
-/// Each against the one before, and, where that holds better, against the first.
-void chain(const std::vector<MovingImage>& moving, const std::vector<ImagePointer>& images,
-           AlignedImages& aligned) {
-  const ShiftReference first(*images[0]);
+/// Each against the one before, and, where that holds better, against the first. In a direction in
+/// which nothing but nuclei tells, these speak, if nearly all of them agree.
+void chain(const std::vector<ImagePointer>& images, double blob_px, AlignedImages& aligned) {
+  std::vector<OpenedThumb> thumbs;
+  std::vector<MovingImage> moving;
+  for (const auto& image : images) {
+    thumbs.push_back(opened_thumb(*image, blob_px));
+    moving.emplace_back(*thumbs.back().image);
+  }
+  const ShiftReference first(*thumbs[0].image);
+  const double factor = thumbs[0].factor;
   for (std::size_t k = 1; k < images.size(); ++k) {
-    const ShiftReference before(*images[k - 1]);
+    const ShiftReference before(*thumbs[k - 1].image);
     auto step = before.find(moving[k], 0, 0, true);
-    step.x += aligned.x[k - 1];
-    step.y += aligned.y[k - 1];
+    double nuclei_x = 0;
+    double nuclei_y = 0;
+    if (step.blind_directions > 0) {
+      const ShiftReference nuclei(*images[k - 1], nullptr, nuclei_agreement);
+      const auto seen =
+          nuclei.find(MovingImage(*images[k]), factor * step.x, factor * step.y, true);
+      const double x = seen.x - factor * step.x;
+      const double y = seen.y - factor * step.y;
+      const bool both = step.blind_directions == 2;
+      const double along = x * step.blind_x + y * step.blind_y;
+      nuclei_x = both ? x : along * step.blind_x;
+      nuclei_y = both ? y : along * step.blind_y;
+    }
+    step.x += aligned.x[k - 1] / factor + nuclei_x / factor;
+    step.y += aligned.y[k - 1] / factor + nuclei_y / factor;
     const auto direct = first.find(moving[k], step.x, step.y, false);
-    put(direct.agreement > trusted_agreement && direct.blind_directions == 0 ? direct : step, k,
-        aligned);
+    const auto& better = direct.agreement > trusted_agreement ? direct : step;
+    aligned.x[k] = better.x * factor;
+    aligned.y[k] = better.y * factor;
   }
 }
 
@@ -121,7 +145,7 @@ AlignedImages combine_at(const std::vector<ImagePointer>& images, std::vector<do
   return aligned;
 }
 
-AlignedImages align(const std::vector<ImagePointer>& images) {
+AlignedImages align(const std::vector<ImagePointer>& images, double blob_px) {
   AlignedImages aligned;
   aligned.x.assign(images.size(), 0);
   aligned.y.assign(images.size(), 0);
@@ -130,7 +154,7 @@ AlignedImages align(const std::vector<ImagePointer>& images) {
   aligned.offset.assign(images.size(), 0);
   std::vector<MovingImage> moving;
   for (const auto& image : images) moving.emplace_back(*image);
-  chain(moving, images, aligned);
+  chain(images, blob_px, aligned);
   combine(images, aligned);
   for (int round = 0; round < median_rounds && images.size() > 2; ++round) {
     const ShiftReference middle(*aligned.median, aligned.spread);

@@ -4,6 +4,7 @@
 #include <vector>
 
 #include "wavefount/core/robust.h"
+#include "wavefount/tube/binning.h"
 #include "wavefount/tube/shift.h"
 
 namespace wavefount::tube {
@@ -84,6 +85,22 @@ const cv::Mat& MovingImage::spectrum() const {
                                across[static_cast<std::size_t>(x)];
   cv::dft(padded, spectrum_, cv::DFT_COMPLEX_OUTPUT, thumb.rows);
   return spectrum_;
+}
+
+OpenedThumb opened_thumb(const Image& reduced, double blob_px) {
+  OpenedThumb thumb;
+  const int longest = std::max(image_width(reduced), image_height(reduced));
+  const int shortest = std::min(image_width(reduced), image_height(reduced));
+  thumb.factor = std::clamp(static_cast<int>(std::ceil(longest / longest_thumb_px)), 1,
+                            std::max(1, shortest / 8));
+  thumb.image = bin_mean(reduced, thumb.factor);
+  cv::Mat pixels = as_matrix(*thumb.image);
+  const int side = 2 * static_cast<int>(std::lround(blob_px / thumb.factor / 2)) + 1;
+  if (side < 3) return thumb;
+  cv::morphologyEx(pixels, pixels, cv::MORPH_OPEN,
+                   cv::getStructuringElement(cv::MORPH_ELLIPSE, cv::Size(side, side)),
+                   cv::Point(-1, -1), 1, cv::BORDER_REPLICATE);
+  return thumb;
 }
 
 }  // namespace wavefount::tube

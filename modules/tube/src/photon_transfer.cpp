@@ -192,11 +192,9 @@ void split_intercept(const NoiseLine& line, const CameraSettings& given, int z_p
     notes.push_back("The dark offset is not known; " + rounded_text(camera.dark_offset_counts, 3) +
                     " counts follow from the noise; dark_offset_counts in the sidecar gives it.");
   }
-  const double squared =
-      (line.intercept + slope * camera.dark_offset_counts) / (slope * slope);
-  camera.read_noise_electrons = given.read_noise_electrons
-                                    ? *given.read_noise_electrons * planes
-                                    : std::sqrt(std::max(0.0, squared));
+  const double squared = (line.intercept + slope * camera.dark_offset_counts) / (slope * slope);
+  camera.read_noise_electrons = given.read_noise_electrons ? *given.read_noise_electrons * planes
+                                                           : std::sqrt(std::max(0.0, squared));
 }
 
 }  // namespace
@@ -237,8 +235,8 @@ CameraModel estimate_camera(const std::vector<NoisePoint>& points, const CameraS
 
 void SaturationFinder::add(const Image& plane) {
   const float* pixels = plane.GetBufferPointer();
-  const auto count = static_cast<std::size_t>(image_width(plane)) *
-                     static_cast<std::size_t>(image_height(plane));
+  const auto count =
+      static_cast<std::size_t>(image_width(plane)) * static_cast<std::size_t>(image_height(plane));
   float highest = 0;
   float lowest = std::numeric_limits<float>::max();
   for (std::size_t i = 0; i < count; ++i) {

@@ -16,6 +16,8 @@ namespace {
 constexpr int least_margin_px = 8;
 /// Bright nuclei of a float film may reach this many times the range seen ahead.
 constexpr double headroom = 4;
+/// Nuclei tell of the stage only when this share of their edges lies upon others.
+constexpr double nuclei_agreement = 0.65;
 
 ImagePointer cropped(const Image& image, int left, int top, int width, int height) {
   auto part = make_image(width, height);
@@ -108,14 +110,14 @@ CropPlan plan_crop(const FilmDescription& film, const Prescan& prescan, const Tu
   const auto cells = [factor](double from, double to, int size) {
     const int most = size / factor;
     const int first = static_cast<int>(std::clamp(std::floor(from / factor), 0.0, most - 1.0));
-    const int last = static_cast<int>(std::clamp(std::ceil((to + 1) / factor), first + 1.0,
-                                                 static_cast<double>(most)));
+    const int last = static_cast<int>(
+        std::clamp(std::ceil((to + 1) / factor), first + 1.0, static_cast<double>(most)));
     return std::pair(first, last - first);
   };
-  const auto [x, width] = cells(left + left_drift - margin, right + right_drift + margin,
-                                film.width);
-  const auto [y, height] = cells(top + up_drift - margin, bottom + down_drift + margin,
-                                 film.height);
+  const auto [x, width] =
+      cells(left + left_drift - margin, right + right_drift + margin, film.width);
+  const auto [y, height] =
+      cells(top + up_drift - margin, bottom + down_drift + margin, film.height);
   CropPlan crop{x * factor, y * factor, width, height, 0, 65535};
   const auto [lowest, highest] = range_of(prescan);
   if (film.bit_depth < 32) {
@@ -139,7 +141,8 @@ std::shared_ptr<ReducedFilm> make_reduced_film(const FilmDescription& film, cons
 }
 
 FramePlan plan_frames(const FilmDescription& film, const Prescan& prescan,
-                      const CameraModel& camera, const Tubes& tubes, const ReducedFilm& reduced) {
+                      const CameraModel& camera, const Tubes& tubes, const ReducedFilm& reduced,
+                      double largest_radius_um) {
   FramePlan plan;
   plan.inside = spans_of(tube_mask(film, tubes, reduced));
   plan.keyframes = prescan.frames;
@@ -150,7 +153,6 @@ FramePlan plan_frames(const FilmDescription& film, const Prescan& prescan,
   const auto part = [&](const Image& image) {
     return cropped(image, left, top, reduced.width(), reduced.height());
   };
-  AlignedImages aligned;
   for (std::size_t k = 0; k < prescan.images.size(); ++k) {
     plan.key_x.push_back(prescan.shift_x_px[k] / reduced.factor());
     plan.key_y.push_back(prescan.shift_y_px[k] / reduced.factor());
@@ -161,15 +163,17 @@ FramePlan plan_frames(const FilmDescription& film, const Prescan& prescan,
     return images;
   }();
   const auto still = combine_at(parts, plan.key_x, plan.key_y);
+  plan.blob_px = 2 * largest_radius_um / (film.pixel_um * reduced.factor());
   plan.standing = std::make_unique<ShiftReference>(*still.median, still.spread.GetPointer());
+  plan.coarse = std::make_unique<ShiftReference>(*opened_thumb(*still.median, plan.blob_px).image);
   std::vector<double> agreements;
   for (std::size_t k = 0; k < parts.size(); ++k) {
     plan.key_light.push_back(mean_inside(*parts[k], plan.inside));
-    plan.keys.emplace_back(*parts[k]);
+    plan.keys.emplace_back(*parts[k], nullptr, nuclei_agreement);
     agreements.push_back(
         plan.standing->find(MovingImage(*parts[k]), plan.key_x[k], plan.key_y[k], false).agreement);
   }
-  plan.standing->expect(median(std::move(agreements)));
+  plan.expected_agreement = median(std::move(agreements));
   std::vector<double> darkest;
   const auto low = part(*prescan.low);
   const auto count = low->GetLargestPossibleRegion().GetNumberOfPixels();
@@ -189,8 +193,7 @@ ExpectedShift expected_shift(const FramePlan& plan, int frame) {
   if (expected.after > 0 && plan.keyframes[expected.after] > frame) --expected.before;
   const int gap = plan.keyframes[expected.after] - plan.keyframes[expected.before];
   if (gap > 0)
-    expected.after_share =
-        static_cast<double>(frame - plan.keyframes[expected.before]) / gap;
+    expected.after_share = static_cast<double>(frame - plan.keyframes[expected.before]) / gap;
   const auto between = [&](const std::vector<double>& values) {
     return values[expected.before] +
            expected.after_share * (values[expected.after] - values[expected.before]);

@@ -45,7 +45,16 @@ StepDeclaration ScanAhead::declaration() const {
        "4",
        {},
        "Radius of the smallest nucleus to be found; frames are reduced until it has 1.5 pixels, "
-       "and nuclei of extract and embryo re-form at 4 um or more."}};
+       "and nuclei of extract and embryo re-form at 4 um or more."},
+      {"largest_radius_um",
+       ParameterKind::number,
+       "um",
+       0.5,
+       500,
+       "25",
+       {},
+       "Radius of the largest nucleus; bright things up to this size are taken off before the "
+       "keyframes' shifts are sought. Nuclei of cycling extract stay below 25 um."}};
   return said;
 }
 
@@ -54,6 +63,7 @@ void ScanAhead::process(AcquisitionWork& work) const {
   settings.frames = parameters().integer("frames");
   settings.noise_pairs = parameters().integer("noise_pairs");
   settings.smallest_radius_um = parameters().number("smallest_radius_um");
+  settings.largest_radius_um = parameters().number("largest_radius_um");
   auto result = scan_ahead(*work.source, settings, *work.messages);
   work.records->put(std::move(result.camera));
   work.records->put(std::move(result.prescan));
@@ -112,8 +122,8 @@ void FindTube::process(AcquisitionWork& work) const {
   settings.wall_glow_um = parameters().number("wall_glow_um");
   settings.narrowest_um = parameters().number("narrowest_um");
   settings.smallest_bubble_um = parameters().number("smallest_bubble_um");
-  work.records->put(find_tubes(work.records->get<FilmDescription>(),
-                               work.records->get<Prescan>(), settings, *work.messages));
+  work.records->put(find_tubes(work.records->get<FilmDescription>(), work.records->get<Prescan>(),
+                               settings, *work.messages));
 }
 
 StepDeclaration PlanReduction::declaration() const {
@@ -133,7 +143,16 @@ StepDeclaration PlanReduction::declaration() const {
                       "25",
                       {},
                       "Kept around the tubes, beyond the drift seen ahead; a nucleus at the wall "
-                      "and its surroundings need some 25 um."}};
+                      "and its surroundings need some 25 um."},
+                     {"largest_radius_um",
+                      ParameterKind::number,
+                      "um",
+                      0.5,
+                      500,
+                      "25",
+                      {},
+                      "Radius of the largest nucleus; bright things up to this size do not count "
+                      "when a jump is looked for. Nuclei of cycling extract stay below 25 um."}};
   return said;
 }
 
@@ -143,8 +162,8 @@ void PlanReduction::process(AcquisitionWork& work) const {
   const auto& tubes = work.records->get<Tubes>();
   const auto crop = plan_crop(film, prescan, tubes, parameters().number("margin_um"));
   auto reduced = make_reduced_film(film, prescan, crop, work.scratch);
-  work.records->put(
-      plan_frames(film, prescan, work.records->get<CameraModel>(), tubes, *reduced));
+  work.records->put(plan_frames(film, prescan, work.records->get<CameraModel>(), tubes, *reduced,
+                                parameters().number("largest_radius_um")));
   work.records->share(std::move(reduced));
 }
 

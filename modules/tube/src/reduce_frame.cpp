@@ -104,9 +104,8 @@ void refuse(FrameObservation& observation, const std::string& why) {
 
 void judge_light(const FramePlan& plan, FrameObservation& observation) {
   if (observation.saturated_share > most_saturated)
-    return refuse(observation,
-                  rounded_text(100 * observation.saturated_share, 2) +
-                      " % of the tube is saturated.");
+    return refuse(observation, rounded_text(100 * observation.saturated_share, 2) +
+                                   " % of the tube is saturated.");
   if (plan.key_light.empty() || observation.tube_pixels <= 0) return;
   const auto expected = expected_shift(plan, observation.frame);
   const double usual =

@@ -110,9 +110,9 @@ class Scanner {
   }
 
   void pair_up(const Image& pixels, int frame, Keyframes& keys) {
-    const double limit =
-        film_.bit_depth >= 32 ? std::numeric_limits<double>::infinity()
-                              : (std::ldexp(1.0, film_.bit_depth) - 1) * film_.z_planes;
+    const double limit = film_.bit_depth >= 32
+                             ? std::numeric_limits<double>::infinity()
+                             : (std::ldexp(1.0, film_.bit_depth) - 1) * film_.z_planes;
     const int next = frame + 1 < film_.frames ? frame + 1 : frame - 1;
     if (next < 0) return add_single(pixels, limit, keys.noise);
     try {
@@ -212,8 +212,7 @@ bool mend(Image& image) {
   return true;
 }
 
-ScanResult scan_ahead(const FrameSource& source, const ScanSettings& settings,
-                      Messages& messages) {
+ScanResult scan_ahead(const FrameSource& source, const ScanSettings& settings, Messages& messages) {
   const auto& film = source.description();
   Scanner scanner(source, settings);
   auto keys = scanner.read(settings);
@@ -224,7 +223,8 @@ ScanResult scan_ahead(const FrameSource& source, const ScanSettings& settings,
                        ? std::string("; the sidecar excludes all of them.")
                        : ": " + keys.unreadable.front() + " Look at the film itself."));
   say_left_out(keys, messages);
-  auto aligned = align(keys.images);
+  const double reduced_um = std::max(film.pixel_um, 1e-9) * scanner.factor();
+  auto aligned = align(keys.images, 2 * settings.largest_radius_um / reduced_um);
   ScanResult result;
   std::vector<std::string> notes;
   result.camera = estimate_camera(keys.noise, film.camera, film.z_planes,

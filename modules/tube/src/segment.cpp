@@ -14,7 +14,8 @@ namespace {
 constexpr int rounds = 12;
 /// Pixels sampled for a level field: plenty for six numbers.
 constexpr std::size_t sample_count = 6000;
-/// A region below this share of the image gets a constant level: its extent is too short for slopes.
+/// A region below this share of the image gets a constant level: its extent is too short for
+/// slopes.
 constexpr double sloped_share = 0.04;
 /// A border is an edge when this share of the contrast lies within a short step across it.
 constexpr double edge_share = 0.45;

@@ -29,12 +29,9 @@ constexpr double tukey_cut = 4.685;
 constexpr double agreement_scale = 1.5;
 /// Smoothing makes neighbouring residuals alike: the plain standard error is too small by this.
 constexpr double neighbour_inflation = 2;
-/// A direction with a standard error above this, or whose edges are confirmed by less than this
-/// share, is blind.
+/// A direction with a standard error above this is blind.
 constexpr double blind_se_px = 0.3;
-constexpr double blind_agreement = 0.35;
-/// A wide search is worth while, and a far candidate better, only beyond these margins.
-constexpr double search_margin = 0.15;
+/// A far candidate is better than the prior only beyond this margin of agreement.
 constexpr double candidate_margin = 0.08;
 constexpr int candidate_peaks = 5;
 constexpr int rounds = 10;
@@ -61,12 +58,13 @@ struct ShiftReference::Fit {
   double gain = 1, offset = 0;
   double scale = 1;
   double moving_variance = 0;
-  std::vector<float> values;  ///< of the image at each anchor; NaN outside
+  std::vector<float> values;      ///< of the image at each anchor; NaN outside
   std::vector<double> residuals;  ///< in expected deviations; NaN outside
   Eigen::Matrix4d information = Eigen::Matrix4d::Zero();
 };
 
-ShiftReference::ShiftReference(const Image& reduced, const Image* spread) : image_(reduced) {
+ShiftReference::ShiftReference(const Image& reduced, const Image* spread, double least_agreement)
+    : image_(reduced), least_agreement_(least_agreement) {
   cv::Mat spread_matrix;
   if (spread) spread_matrix = as_matrix(*spread);
   choose_anchors(edges(spread ? &spread_matrix : nullptr));
@@ -89,10 +87,10 @@ std::vector<ShiftReference::Anchor> ShiftReference::edges(const cv::Mat* spread)
       const double squared = gradient_x * gradient_x + gradient_y * gradient_y;
       if (!(squared > least)) continue;
       const double varied = varying ? varying[x] : 0;
-      const double variance = varied * varied + noise_variance +
-                              edge_tolerance_px * edge_tolerance_px * squared;
-      found.push_back({static_cast<float>(x), static_cast<float>(y), row[x], gradient_x,
-                       gradient_y, static_cast<float>(variance)});
+      const double variance =
+          varied * varied + noise_variance + edge_tolerance_px * edge_tolerance_px * squared;
+      found.push_back({static_cast<float>(x), static_cast<float>(y), row[x], gradient_x, gradient_y,
+                       static_cast<float>(variance)});
     }
   }
   return found;
@@ -112,6 +110,7 @@ void ShiftReference::choose_anchors(std::vector<Anchor> candidates) {
   }
   const Eigen::Matrix2d directions =
       Eigen::SelfAdjointEigenSolver<Eigen::Matrix2d>(tensor).eigenvectors();
+  directions_ = {directions(0, 0), directions(1, 0), directions(0, 1), directions(1, 1)};
   const std::size_t half = anchor_count / 2;
   for (int k = 0; k < 2 && !candidates.empty(); ++k) {  // the weaker direction first
     const Eigen::Vector2d direction = directions.col(k);
@@ -131,9 +130,8 @@ void ShiftReference::choose_anchors(std::vector<Anchor> candidates) {
     candidates.erase(candidates.begin(), candidates.begin() + count);
   }
   // In the order of the rows, memory is read along.
-  std::sort(anchors_.begin(), anchors_.end(), [](const Anchor& a, const Anchor& b) {
-    return a.y != b.y ? a.y < b.y : a.x < b.x;
-  });
+  std::sort(anchors_.begin(), anchors_.end(),
+            [](const Anchor& a, const Anchor& b) { return a.y != b.y ? a.y < b.y : a.x < b.x; });
 }
 
 void ShiftReference::sample(const MovingImage& moving, Fit& fit) const {
@@ -243,7 +241,7 @@ Shift ShiftReference::judge(const Fit& fit, double prior_x, double prior_y) cons
     const double se = neighbour_inflation * fit.scale / std::sqrt(strength);
     const double total = direction.dot(seen * direction);
     const double share = total > 0 ? direction.dot(confirmed * direction) / total : 0;
-    if (se < blind_se_px && share > blind_agreement) {
+    if (se < blind_se_px && share > least_agreement_) {
       shift.se = std::min(shift.se, se);
       continue;
     }
@@ -255,7 +253,13 @@ Shift ShiftReference::judge(const Fit& fit, double prior_x, double prior_y) cons
   if (shift.blind_directions == 2) shift.blind_x = shift.blind_y = 0;
   shift.x = prior_x + change.x();
   shift.y = prior_y + change.y();
-  if (seen.trace() > 0) shift.agreement = confirmed.trace() / seen.trace();
+  shift.agreement = 1;
+  for (std::size_t k = 0; k < 2; ++k) {
+    const Eigen::Vector2d direction(directions_[2 * k], directions_[2 * k + 1]);
+    const double total = direction.dot(seen * direction);
+    shift.agreement =
+        std::min(shift.agreement, total > 0 ? direction.dot(confirmed * direction) / total : 0.0);
+  }
   return shift;
 }
 
@@ -321,7 +325,7 @@ std::vector<cv::Point2d> ShiftReference::peaks(const MovingImage& moving) const 
 Shift ShiftReference::find(const MovingImage& moving, double prior_x, double prior_y,
                            bool wide_search) const {
   auto best = refine(moving, prior_x, prior_y, prior_x, prior_y);
-  if (!wide_search && best.agreement > expected_agreement_ - search_margin) return best;
+  if (!wide_search) return best;
   double to_beat = best.agreement + candidate_margin;
   for (const auto& peak : peaks(moving)) {
     const auto other = refine(moving, peak.x, peak.y, prior_x, prior_y);

@@ -45,7 +45,7 @@ std::pair<double, double> run(const Straightened& mask, int row, double middle) 
 }
 
 struct Walls {
-  Border upper, lower;  ///< positions as distances from the axis to that side
+  Border upper, lower;         ///< positions as distances from the axis to that side
   double first = 0, last = 0;  ///< stations between which the region covers the axis
   double half = 0;             ///< usual half width
 };
@@ -77,7 +77,7 @@ class TubeMeasure {
  private:
   struct Cap {
     Boundary kind = Boundary::closed;
-    double station = 0;  ///< where the axis ends
+    double station = 0;        ///< where the axis ends
     std::vector<Point> curve;  ///< (station, across) from upper to lower wall
   };
 
@@ -114,6 +114,7 @@ class TubeMeasure {
       if (at >= walls_.first + margin && at <= walls_.last - margin) continue;
       upper.expected[i] = lower.expected[i] = none;
     }
+    upper.half_width = lower.half_width = half_;
     walls_.upper = find_border(flipped(pixels_), upper);
     walls_.lower = find_border(pixels_, lower);
   }
@@ -191,8 +192,7 @@ class TubeMeasure {
   void decide_walls(TubeShape& shape) {
     decide_wall(walls_.upper, "upper", shape.upper_wall, shape);
     decide_wall(walls_.lower, "lower", shape.lower_wall, shape);
-    const bool both =
-        shape.upper_wall == Boundary::closed && shape.lower_wall == Boundary::closed;
+    const bool both = shape.upper_wall == Boundary::closed && shape.lower_wall == Boundary::closed;
     if (both) half_ = usual_half();
     shape.width = 2 * half_;
     if (!request_.width) return;
@@ -220,8 +220,8 @@ class TubeMeasure {
 
   Cap find_end(bool right, TubeShape& shape) {
     const double final_station = static_cast<double>(axis_.size() - 1);
-    const auto near = static_cast<std::size_t>(std::clamp(
-        right ? walls_.last - half_ : walls_.first + half_, 0.0, final_station));
+    const auto near = static_cast<std::size_t>(
+        std::clamp(right ? walls_.last - half_ : walls_.first + half_, 0.0, final_station));
     const double from = -std::min(wall(true, near), pixels_.half) + 1;
     const double to = std::min(wall(false, near), pixels_.half) - 1;
     const auto profiles = lengthwise(pixels_, from, to, right);
@@ -231,15 +231,15 @@ class TubeMeasure {
     looked.cutoff = std::max(half_ / 2, 4.0) / pixels_.step;
     looked.inside_depth = std::max(6.0, 1.5 * half_);
     looked.reach = std::clamp(half_ / 2, 5.0, 20.0);
-    const double inner = right ? static_cast<double>(near)
-                               : final_station - static_cast<double>(near);
+    const double inner =
+        right ? static_cast<double>(near) : final_station - static_cast<double>(near);
     for (int row = 0; row < cover.values.rows; ++row)
       looked.expected.push_back(run(cover, row, inner).second);
     const auto border = find_border(profiles, looked);
     Cap cap;
     const std::string name = right ? "right" : "left";
     cap.kind = border.out_of_view_share > open_share || border.found_share == 0 ? Boundary::open
-                                                                               : Boundary::closed;
+                                                                                : Boundary::closed;
     const double mixed = std::min(border.out_of_view_share, 1 - border.out_of_view_share);
     if (mixed > doubtful_share)
       shape.doubts.push_back("Part of the " + name + " end runs out of the image.");
@@ -252,8 +252,8 @@ class TubeMeasure {
     }
     const double origin = pixels_.across(pixels_.column(from));
     for (std::size_t row = 0; row < border.position.size(); ++row)
-      cap.curve.push_back({station(border.position[row]),
-                           origin + static_cast<double>(row) * pixels_.step});
+      cap.curve.push_back(
+          {station(border.position[row]), origin + static_cast<double>(row) * pixels_.step});
     const auto middle = static_cast<std::size_t>(std::clamp(
         std::lround(-origin / pixels_.step), 0L, static_cast<long>(cap.curve.size()) - 1));
     cap.station = cap.curve[middle].x;

@@ -1,5 +1,6 @@
 #pragma once
 
+#include <optional>
 #include <vector>
 
 #include "wavefount/tube/axis.h"
@@ -21,24 +22,18 @@ struct BorderSearch {
   /// Rough position, one a profile; NaN where none is asked for, infinity where the profile leaves
   /// the image before any edge.
   std::vector<double> expected;
-  double reach = 10;             ///< how far around it
-  double inside_depth = 20;      ///< the inside level is taken from this far in
-  double outside_depth = 15;     ///< and the outside level from this far out
-  double outside_level = 0;      ///< where no outside is in view
-  double blur = 4;               ///< next to the edge neither level holds
-  double cutoff = 100;           ///< waves shorter than this are no shape of the border, profiles
+  double reach = 10;                 ///< how far around it
+  double inside_depth = 20;          ///< the inside level is taken from this far in
+  double outside_depth = 15;         ///< and the outside level from this far out
+  double outside_level = 0;          ///< where no outside is in view
+  double blur = 4;                   ///< next to the edge neither level holds
+  std::optional<double> half_width;  ///< of the tube, where the profiles start at its axis
+  double cutoff = 100;  ///< waves shorter than this are no shape of the border, profiles
 };
 
-/// Half-height positions between local inside and outside level, then a robust smooth curve. Where
-/// the wall glows (a bright line that the half-height position would be pushed out by) the stacked
-/// profile is fitted by a blurred step with a bright line on it, and the curve moved accordingly.
+/// Half-height positions between local inside and outside level, then a robust smooth curve, moved
+/// by what the mean profile across it tells of glow and a round section (section.h).
 /// `profiles`: one row a profile, values rising outwards with the column.
 Border find_border(const Straightened& profiles, const BorderSearch& search);
-
-/// How far the half-height position lies outside the edge when a bright line glows along it:
-/// `profile` runs from inside to outside in steps of `step` pixels, its half-height position at
-/// `zero`. 0 where no line stands out.
-double glow_offset(const std::vector<double>& profile, double step, double zero, double inside,
-                   double outside);
 
 }  // namespace wavefount::tube

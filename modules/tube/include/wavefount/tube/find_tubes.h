@@ -11,9 +11,9 @@
 namespace wavefount::tube {
 
 struct TubeSettings {
-  bool automatic = true;         ///< false: the whole field stands for the tube
-  double wall_glow_um = 12;      ///< bright lines up to this width are wall glow
-  double narrowest_um = 40;      ///< tubes and embryos are at least this wide
+  bool automatic = true;           ///< false: the whole field stands for the tube
+  double wall_glow_um = 12;        ///< bright lines up to this width are wall glow
+  double narrowest_um = 40;        ///< tubes and embryos are at least this wide
   double smallest_bubble_um = 20;  ///< diameter
 };
 

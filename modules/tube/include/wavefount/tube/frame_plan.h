@@ -27,20 +27,23 @@ struct FramePlan {
 
   /// Pixels inside the tubes and outside their holes, in the place of the first frame.
   std::vector<Span> inside;
-  std::vector<int> keyframes;                ///< frame numbers of the prescan
-  std::vector<double> key_x, key_y;          ///< their shifts, reduced pixels
-  std::vector<double> key_light;             ///< their mean inside the tubes, counts
-  double dark_counts = 0;                    ///< level that counts as no light
+  std::vector<int> keyframes;        ///< frame numbers of the prescan
+  std::vector<double> key_x, key_y;  ///< their shifts, reduced pixels
+  std::vector<double> key_light;     ///< their mean inside the tubes, counts
+  double dark_counts = 0;            ///< level that counts as no light
   double saturation_counts = 0;
   double pixel_um = 1;
+  double blob_px = 1;                        ///< diameter of the largest nucleus, reduced pixels
   std::unique_ptr<ShiftReference> standing;  ///< median image: what stands still
-  std::vector<ShiftReference> keys;          ///< each keyframe for itself
+  std::unique_ptr<ShiftReference> coarse;    ///< its thumbnail without nuclei
+  double expected_agreement = 1;             ///< of faultless frames with `standing`
+  std::vector<ShiftReference> keys;          ///< each keyframe for itself, nuclei included
 };
 
 /// Where the work file's crop lies, and what values it must hold.
 struct CropPlan {
-  int left = 0, top = 0;       ///< full-size pixels
-  int width = 0, height = 0;   ///< reduced pixels
+  int left = 0, top = 0;      ///< full-size pixels
+  int width = 0, height = 0;  ///< reduced pixels
   double lowest = 0, highest = 65535;
 };
 
@@ -56,7 +59,8 @@ std::shared_ptr<ReducedFilm> make_reduced_film(const FilmDescription& film, cons
                                                const std::filesystem::path& scratch);
 
 FramePlan plan_frames(const FilmDescription& film, const Prescan& prescan,
-                      const CameraModel& camera, const Tubes& tubes, const ReducedFilm& reduced);
+                      const CameraModel& camera, const Tubes& tubes, const ReducedFilm& reduced,
+                      double largest_radius_um);
 
 /// Shift expected of a frame between two keyframes, reduced pixels.
 struct ExpectedShift {
@@ -73,8 +77,8 @@ ImagePointer reduce_frame(Image& pixels, const ReducedFilm& film, const FramePla
                           FrameObservation& observation);
 
 /// Shift of a reduced frame, into `observation`: against the median image of the prescan; in a
-/// direction of which nothing that stands still tells, against the two nearest keyframes, by their
-/// distance in time; and where these tell nothing either, no change.
+/// direction of which nothing that stands still tells, by the nuclei of the two nearest keyframes,
+/// weighted by distance in time, if nearly all of them agree; else no change.
 void register_frame(const Image& reduced, const FramePlan& plan, int factor,
                     FrameObservation& observation);
 

@@ -7,9 +7,10 @@
 namespace wavefount::tube {
 
 struct ScanSettings {
-  int frames = 32;               ///< read at most
-  int noise_pairs = 8;           ///< of frames that follow one another, at most
+  int frames = 32;                ///< read at most
+  int noise_pairs = 8;            ///< of frames that follow one another, at most
   double smallest_radius_um = 4;  ///< of a nucleus to be found
+  double largest_radius_um = 25;  ///< of a nucleus, kept out of what stands still
 };
 
 struct ScanResult {

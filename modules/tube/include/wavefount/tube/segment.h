@@ -16,7 +16,7 @@ struct LevelField {
 
 /// What is tube and what is outside, roughly, in reduced pixels.
 struct Segmentation {
-  cv::Mat smoothed;     ///< image with thin bright lines and small bright debris taken off
+  cv::Mat smoothed;  ///< image with thin bright lines and small bright debris taken off
   LevelField inside, outside;
   std::vector<cv::Mat> regions;  ///< CV_8U masks (0 / 255), holes filled, largest first
   double contrast = 0;           ///< median of inside less outside, counts

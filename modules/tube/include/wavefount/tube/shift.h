@@ -13,8 +13,10 @@ namespace wavefount::tube {
 struct Shift {
   double x = 0;
   double y = 0;
-  double se = 0;         ///< standard error of the better determined direction
-  double agreement = 0;  ///< 0 to 1: share of the reference's edges that the image confirms
+  double se = 0;  ///< standard error of the better determined direction
+  /// 0 to 1: share of the reference's edges that the image confirms, in the direction in which it
+  /// confirms less.
+  double agreement = 0;
   /// Directions in which nothing tells and the prior stands: none, one (a unit vector), or both.
   int blind_directions = 0;
   double blind_x = 0;
@@ -52,14 +54,12 @@ class MovingImage {
 class ShiftReference {
  public:
   /// `spread`: how much each pixel varies in time beside shifts, counts, or null: edges that vary
-  /// weigh little.
-  explicit ShiftReference(const Image& reduced, const Image* spread = nullptr);
+  /// weigh little. `least_agreement`: a direction whose edges are confirmed by less is blind.
+  explicit ShiftReference(const Image& reduced, const Image* spread = nullptr,
+                          double least_agreement = 0.35);
 
-  /// `wide_search`: compare phase-correlation peaks even if the prior already fits.
+  /// `wide_search`: try the peaks of the phase correlation too, not only the prior.
   Shift find(const MovingImage& moving, double prior_x, double prior_y, bool wide_search) const;
-
-  /// Agreement that faultless images reach; below it by a margin `find` searches widely.
-  void expect(double agreement) { expected_agreement_ = agreement; }
 
  private:
   /// One edge pixel of the reference: `variance` is of its brightness beside noise of the other.
@@ -72,14 +72,23 @@ class ShiftReference {
   void choose_anchors(std::vector<Anchor> candidates);
   void sample(const MovingImage& moving, Fit& fit) const;
   bool improve(Fit& fit) const;
-  Shift refine(const MovingImage& moving, double x, double y, double prior_x,
-               double prior_y) const;
+  Shift refine(const MovingImage& moving, double x, double y, double prior_x, double prior_y) const;
   Shift judge(const Fit& fit, double prior_x, double prior_y) const;
   std::vector<cv::Point2d> peaks(const MovingImage& moving) const;
 
   MovingImage image_;
+  double least_agreement_;
   std::vector<Anchor> anchors_;
-  double expected_agreement_ = 1;
+  std::array<double, 4> directions_{1, 0, 0, 1};  ///< weaker, then stronger unit vector
 };
+
+/// The image without nuclei: binned to at most 256 pixels a side and opened (Serra 1982) with a
+/// disc of `blob_px` reduced pixels, so that walls, ends and bubbles stay and all that is small and
+/// bright goes. Made for the coarse shift that nuclei must not speak in.
+struct OpenedThumb {
+  ImagePointer image;
+  int factor = 1;  ///< reduced pixels a side of a thumbnail pixel
+};
+OpenedThumb opened_thumb(const Image& reduced, double blob_px);
 
 }  // namespace wavefount::tube
