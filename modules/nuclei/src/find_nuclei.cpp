@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cmath>
+#include <opencv2/core.hpp>
 
 #include "wavefount/core/problem.h"
 #include "wavefount/nuclei/cytoplasm.h"
@@ -43,8 +44,9 @@ Detection find_nuclei(const Image& reduced, const TubeMask& tubes, const CameraM
   detection.noise = cytoplasm.typical_noise();
   cv::Mat1f excess = cytoplasm.excess(frame, tubes.pixels());
   const cv::Mat1f walls = wall_distance(tubes.pixels());
-  remove_wall_glow(excess, walls, settings.largest_radius_um / reduced_um,
-                   cytoplasm.typical_noise());
+  detection.glow =
+      wall_glow(excess, walls, settings.largest_radius_um / reduced_um, cytoplasm.typical_noise());
+  if (!detection.glow.empty()) cv::subtract(excess, detection.glow, excess);
   for (const Blob& blob :
        find_blobs({excess, tubes.pixels(), walls, cytoplasm}, scales, settings.thresholds))
     detection.candidates.push_back(candidate_of(blob, tubes));

@@ -3,6 +3,7 @@
 #include "wavefount/core/problem.h"
 #include "wavefount/core/reduced_film.h"
 #include "wavefount/nuclei/find_nuclei.h"
+#include "wavefount/nuclei/wall_glow.h"
 
 namespace wavefount::nuclei {
 
@@ -76,6 +77,7 @@ void FindNuclei::process(FrameWork& frame, const RecordStore& film) const {
   const auto found =
       find_nuclei(*frame.reduced, tubes, film.get<CameraModel>(), described.pixel_um, settings);
   frame.observation.sightings = found.candidates;
+  if (!found.glow.empty()) frame.extras.put(GlowOfFrame{found.glow});
   if (frame.observation.noise <= 0) frame.observation.noise = found.noise;
 }
 

@@ -168,6 +168,7 @@ class Cluster {
     // A sub-window: the filter takes the pixels beyond it from the frame.
     cv::GaussianBlur(sharp(window_), smooth_, cv::Size(0, 0), smoothing_, smoothing_,
                      cv::BORDER_REFLECT_101);
+    shut_tube();
     seeds_.clear();
     for (std::size_t i = 0; i < bodies_.size(); ++i) {
       const Body& body = bodies_[i];
@@ -179,6 +180,15 @@ class Cluster {
     }
     labels_ = grow_regions(smooth_, seeds_);
     if (seeds_.size() > 1) join_regions(labels_, smooth_, seeds_, limits_.largest_radius_px);
+  }
+
+  /// Nothing grows out of the tube.
+  void shut_tube() {
+    const auto level = static_cast<float>(cytoplasm_.front());
+    for (int y = 0; y < smooth_.rows; ++y)
+      for (int x = 0; x < smooth_.cols; ++x)
+        if (frame_.tubes.tube_at(x + window_.x, y + window_.y) < 0)
+          smooth_(y, x) = std::min(smooth_(y, x), level);
   }
 
   double wanted_smoothing(const cv::Mat1f& sharp) const {

@@ -2,6 +2,7 @@
 
 #include "wavefount/core/reduced_film.h"
 #include "wavefount/nuclei/outline_nuclei.h"
+#include "wavefount/nuclei/wall_glow.h"
 
 namespace wavefount::nuclei {
 
@@ -79,9 +80,14 @@ void OutlineNuclei::process(FrameWork& frame, const RecordStore& film) const {
                          reduced.height()};
   const TubeMask tubes(film.get<Tubes>(), grid, described.pixel_um, frame.observation.shift_x_px,
                        frame.observation.shift_y_px);
-  const Image& sharpest = frame.sharpest.IsNull() ? *frame.pixels : *frame.sharpest;
+  ImagePointer pixels = frame.pixels;
+  ImagePointer sharpest = frame.sharpest.IsNull() ? frame.pixels : frame.sharpest;
+  if (const auto* wall = frame.extras.peek<GlowOfFrame>()) {
+    pixels = without_glow(*frame.pixels, grid, wall->glow);
+    sharpest = sharpest == frame.pixels ? pixels : without_glow(*sharpest, grid, wall->glow);
+  }
   sightings =
-      outline_nuclei({sharpest, *frame.pixels, tubes, film.get<CameraModel>()}, sightings, limits);
+      outline_nuclei({*sharpest, *pixels, tubes, film.get<CameraModel>()}, sightings, limits);
 }
 
 }  // namespace wavefount::nuclei

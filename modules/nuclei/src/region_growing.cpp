@@ -45,7 +45,7 @@ class Growth {
       : image_(image), seeds_(seeds), labels_(image.size(), none) {}
 
   cv::Mat1i run() {
-    if (seeds_.size() > 1) measure_depth();
+    if (seeds_.size() > 1) rank_pixels();
     plant();
     if (seeds_.size() == 1)
       flood_alone();
@@ -57,36 +57,37 @@ class Growth {
 
  private:
   struct Front {
-    float key;
+    float rank;
     std::uint32_t order;
     std::int32_t x, y, label;
     bool operator<(const Front& other) const {
-      return key != other.key ? key < other.key : order > other.order;
+      return rank != other.rank ? rank < other.rank : order > other.order;
     }
   };
 
-  /// Distance to the common outline over the radius of the seed nearest for its size.
-  void measure_depth() {
+  /// The order of the flood: brightness over the peak, capped at it, plus the distance to the
+  /// common outline over the radius; both of the seed that is nearest for its size, so that no seed
+  /// sees another's nucleus brighter than its own.
+  void rank_pixels() {
     cv::Mat1f nearest(image_.size(), std::numeric_limits<float>::infinity());
     cv::Mat1b bright(image_.size(), static_cast<unsigned char>(0));
-    cv::Mat1f scale(image_.size(), 1.0F);
+    cv::Mat1f scale(image_.size(), 0.0F);
+    cv::Mat1f level(image_.size(), 0.0F);
     for (const Seed& seed : seeds_) {
+      const double floor = seed.half - seed.peak / 2;
       for_disc(image_.size(), seed, reach_of(seed), [&](int x, int y, double distance) {
         const auto apart = static_cast<float>(distance / squared(seed.radius));
-        if (apart >= nearest(y, x)) return;
+        if (apart >= nearest(y, x) || seed.peak <= 0) return;
+        const auto value = static_cast<double>(image_(y, x));
         nearest(y, x) = apart;
-        bright(y, x) = static_cast<double>(image_(y, x)) >= seed.half ? 255 : 0;
+        bright(y, x) = value >= seed.half ? 255 : 0;
         scale(y, x) = static_cast<float>(1 / seed.radius);
+        level(y, x) = static_cast<float>(std::min((value - floor) / seed.peak, 1.0));
       });
     }
-    cv::distanceTransform(bright, depth_, cv::DIST_L2, cv::DIST_MASK_5);
-    depth_ = depth_.mul(scale);
-  }
-
-  float key(int x, int y, const Seed& seed) const {
-    const double floor = seed.half - seed.peak / 2;
-    const double level = (static_cast<double>(image_(y, x)) - floor) / std::max(seed.peak, 1e-12);
-    return depth_(y, x) + static_cast<float>(std::min(level, 1.2));
+    cv::distanceTransform(bright, rank_, cv::DIST_L2, cv::DIST_MASK_5);
+    cv::multiply(rank_, scale, rank_);
+    cv::add(rank_, level, rank_);
   }
 
   /// Each seed's core; where cores meet, the seed nearest for its size has the pixel.
@@ -122,7 +123,7 @@ class Growth {
       if (labels_(to_y, to_x) != none) continue;
       if (static_cast<double>(image_(to_y, to_x)) < seed.half) continue;
       if (squared(to_x - seed.x) + squared(to_y - seed.y) > squared(reach_of(seed))) continue;
-      fronts_.push({key(to_x, to_y, seed), order_++, to_x, to_y, label});
+      fronts_.push({rank_(to_y, to_x), order_++, to_x, to_y, label});
     }
   }
 
@@ -195,7 +196,7 @@ class Growth {
   const cv::Mat1f& image_;
   const std::vector<Seed>& seeds_;
   cv::Mat1i labels_;
-  cv::Mat1f depth_;
+  cv::Mat1f rank_;
   std::priority_queue<Front> fronts_;
   std::uint32_t order_ = 0;
   std::vector<cv::Point> open_;

@@ -15,6 +15,8 @@ constexpr double low_share = 0.3;
 constexpr double low_depth = 0.5244;
 /// With fewer pixels at one distance in a stretch no glow is taken out.
 constexpr std::size_t fewest_pixels = 12;
+/// A level below this share of a pixel's noise is taken for none.
+constexpr double faintest_glow = 0.5;
 constexpr int sides = 4;
 
 /// Where a pixel lies with respect to the wall that is nearest to it.
@@ -26,7 +28,7 @@ struct WallPlace {
 
 class Glow {
  public:
-  Glow(cv::Mat1f& excess, const cv::Mat1f& distance, double reach_px, double noise)
+  Glow(const cv::Mat1f& excess, const cv::Mat1f& distance, double reach_px, double noise)
       : excess_(excess),
         distance_(distance),
         reach_(std::max(2, static_cast<int>(std::ceil(reach_px)))),
@@ -36,9 +38,11 @@ class Glow {
     stretch_ = static_cast<double>(longest) / stretches_;
   }
 
-  void remove() {
-    measure();
-    subtract();
+  cv::Mat1f map() {
+    if (!measure()) return {};
+    cv::Mat1f glow(excess_.size(), 0.0F);
+    for_near([&](int x, int y, const WallPlace& place) { glow(y, x) = level_at(place); });
+    return glow;
   }
 
  private:
@@ -63,7 +67,8 @@ class Glow {
     return static_cast<std::size_t>((side * stretches_ + stretch) * (reach_ + 1) + distance);
   }
 
-  void measure() {
+  /// False when nothing glows.
+  bool measure() {
     std::vector<std::vector<float>> values(bin(sides - 1, stretches_ - 1, reach_) + 1);
     for_near([&](int x, int y, const WallPlace& place) {
       const int stretch = std::min(static_cast<int>(place.along / stretch_), stretches_ - 1);
@@ -71,14 +76,19 @@ class Glow {
       values[bin(place.side, stretch, distance)].push_back(excess_(y, x));
     });
     level_.assign(values.size(), 0.0F);
+    bool any = false;
     for (std::size_t i = 0; i < values.size(); ++i) {
       auto& bin_values = values[i];
       if (bin_values.size() < fewest_pixels) continue;
       const auto at = bin_values.begin() + static_cast<std::ptrdiff_t>(
                                                low_share * static_cast<double>(bin_values.size()));
       std::nth_element(bin_values.begin(), at, bin_values.end());
-      level_[i] = std::max(0.0F, *at + static_cast<float>(low_depth * noise_));
+      const double level = static_cast<double>(*at) + low_depth * noise_;
+      if (level < faintest_glow * noise_) continue;
+      level_[i] = static_cast<float>(level);
+      any = true;
     }
+    return any;
   }
 
   float level_at(const WallPlace& place) const {
@@ -97,11 +107,7 @@ class Glow {
     return lower + share * (mixed(high) - lower);
   }
 
-  void subtract() {
-    for_near([&](int x, int y, const WallPlace& place) { excess_(y, x) -= level_at(place); });
-  }
-
-  cv::Mat1f& excess_;
+  const cv::Mat1f& excess_;
   const cv::Mat1f& distance_;
   int reach_;
   double noise_;
@@ -109,6 +115,35 @@ class Glow {
   double stretch_ = 1;
   std::vector<float> level_;
 };
+
+/// Two neighbouring rows or columns and the share of the second.
+struct Between {
+  std::size_t low = 0, high = 0;
+  float share = 0;
+};
+
+Between between(double position, int size) {
+  const double at = std::clamp(position, 0.0, size - 1.0);
+  const auto low = static_cast<std::size_t>(at);
+  return {low, std::min(low + 1, static_cast<std::size_t>(size) - 1),
+          static_cast<float>(at - static_cast<double>(low))};
+}
+
+bool glows(const cv::Mat1f& glow, const Between& rows) {
+  const auto lit = [&](std::size_t row) {
+    const float* from = glow[static_cast<int>(row)];
+    return std::any_of(from, from + glow.cols, [](float level) { return level > 0; });
+  };
+  return lit(rows.low) || lit(rows.high);
+}
+
+void mix_rows(const cv::Mat1f& glow, const Between& rows, std::vector<float>& mixed) {
+  const float* low = glow[static_cast<int>(rows.low)];
+  const float* high = glow[static_cast<int>(rows.high)];
+  mixed.resize(static_cast<std::size_t>(glow.cols));
+  for (std::size_t x = 0; x < mixed.size(); ++x)
+    mixed[x] = low[x] + rows.share * (high[x] - low[x]);
+}
 
 }  // namespace
 
@@ -119,9 +154,27 @@ cv::Mat1f wall_distance(const cv::Mat1b& tubes) {
   return distance;
 }
 
-void remove_wall_glow(cv::Mat1f& excess, const cv::Mat1f& wall_distance, double reach_px,
-                      double noise) {
-  Glow(excess, wall_distance, reach_px, noise).remove();
+cv::Mat1f wall_glow(const cv::Mat1f& excess, const cv::Mat1f& wall_distance, double reach_px,
+                    double noise) {
+  return Glow(excess, wall_distance, reach_px, noise).map();
+}
+
+ImagePointer without_glow(const Image& full, const ReducedGrid& grid, const cv::Mat1f& glow) {
+  auto image = make_image(image_width(full), image_height(full));
+  std::copy_n(full.GetBufferPointer(), full.GetPixelContainer()->Size(), image->GetBufferPointer());
+  cv::Mat1f pixels(as_matrix(*image));
+  if (glow.empty()) return image;
+  std::vector<float> row;
+  for (int y = 0; y < pixels.rows; ++y) {
+    const Between down = between(grid.row(y), glow.rows);
+    if (!glows(glow, down)) continue;
+    mix_rows(glow, down, row);
+    for (int x = 0; x < pixels.cols; ++x) {
+      const Between across = between(grid.column(x), glow.cols);
+      pixels(y, x) -= row[across.low] + across.share * (row[across.high] - row[across.low]);
+    }
+  }
+  return image;
 }
 
 }  // namespace wavefount::nuclei

@@ -19,6 +19,7 @@ struct DetectionSettings {
 struct Detection {
   std::vector<Sighting> candidates;  ///< strongest first; place, radius, sigma and tube are set
   double noise = 0;                  ///< of one reduced pixel of cytoplasm, counts
+  cv::Mat1f glow;                    ///< of the walls, reduced grid, counts; empty: none
 };
 
 /// Candidate nuclei of one reduced frame. `reduced` has the size of the mask's grid; throws Problem
