@@ -60,6 +60,7 @@ void add_waves(const Scene& scene, ResultTables& tables) {
     tables["waves"].push_back({{"acquisition", acquisition},
                                {"wave", number},
                                {"answer", name_of(wave.answer.value_or(Answer::ambiguous))},
+                               {"fate", name_of(wave.fate)},
                                {"speed_um_per_min", given ? number_text(speed) : ""},
                                {"speed_lo_um_per_min", given ? number_text(0.9 * speed) : ""},
                                {"speed_hi_um_per_min", given ? number_text(1.1 * speed) : ""}});
@@ -84,7 +85,7 @@ const std::map<std::string, std::vector<std::string>> columns = {
      {"acquisition", "nucleus", "wave", "outcome", "entry_min", "entry_se_min", "x_um", "y_um",
       "import_rate_per_min", "import_rate_se_per_min", "import_initial", "import_initial_se"}},
     {"waves",
-     {"acquisition", "wave", "answer", "speed_um_per_min", "speed_lo_um_per_min",
+     {"acquisition", "wave", "answer", "fate", "speed_um_per_min", "speed_lo_um_per_min",
       "speed_hi_um_per_min"}},
     {"origins", {"acquisition", "wave", "claimed", "x_um", "y_um", "site"}}};
 

@@ -74,6 +74,7 @@ TEST_F(Score, PerfectResultsGetPerfectFigures) {
   for (const double error : s.initial_errors) EXPECT_NEAR(error, 0, 1e-5);
   EXPECT_EQ(s.waves.value(), 1);
   EXPECT_EQ(s.waves_invented, 0);
+  EXPECT_EQ(s.fates.value(), 1);
   EXPECT_EQ(s.speeds.value(), 1);
   EXPECT_EQ(s.speed_intervals.value(), 1);
   EXPECT_GE(s.origins_right, 4);

@@ -63,6 +63,20 @@ TEST(TruthWaves, TogetherIsSynchronousAndHasNoSpeed) {
   EXPECT_FALSE(waves[0].travelling);
 }
 
+TEST(TruthWaves, ConfirmedUnlessNucleiAreNotSeenToReform) {
+  auto recipe = small_recipe();
+  recipe.waves.arrest = true;
+  recipe.waves.arrest_cycle = 2;
+  const auto waves = whole_waves(build_scene(recipe));
+  ASSERT_EQ(waves.size(), 2u);
+  EXPECT_EQ(waves[0].fate, Fate::confirmed);
+  EXPECT_EQ(waves[1].fate, Fate::terminal);
+  EXPECT_FALSE(waves[1].travelling);
+  EXPECT_FALSE(waves[1].answer);
+  recipe.frames = 90;  // the film ends 6 minutes after the last entry
+  EXPECT_EQ(truth_waves(build_scene(recipe)).back().fate, Fate::unconfirmed);
+}
+
 TEST(TruthWaves, AnEmptyTubeHasNone) {
   auto recipe = small_recipe();
   recipe.spacing_um = 0;

@@ -48,6 +48,7 @@ SceneRecipe medium_wall() {
   r.waves.speed_um_per_min = 26;
   r.waves.jitter_min = 0.35;
   r.wall_glow = 60;
+  r.defocus_um = 1.2;
   return r;
 }
 
@@ -72,6 +73,8 @@ SceneRecipe wide_interior() {
   r.sources = {{0.6, 0.1, 9, 41}};
   r.waves.speed_um_per_min = 30;
   r.debris = 8;
+  r.bubbles = 1;
+  r.missing = 2;
   return r;
 }
 
@@ -156,13 +159,26 @@ SceneRecipe side_by_side() {
   return r;
 }
 
+SceneRecipe arrest() {
+  SceneRecipe r;
+  r.name = "arrest";
+  r.tube_width_um = 150;
+  r.spacing_um = 120;
+  r.view_um = 1200;
+  r.sources = {{0.4, 0, 12, 42}};
+  r.waves.arrest = true;
+  r.waves.arrest_cycle = 2;
+  return r;
+}
+
 }  // namespace
 
 std::vector<SceneRecipe> demo_scenarios(std::uint64_t seed) {
   std::vector<SceneRecipe> recipes = {thin_interior(),   medium_wall(),      open_end(),
                                       empty_tube(),      together(),         bent(),
                                       noisy(),           thin_two_origins(), thin_end(),
-                                      medium_two_ends(), wide_interior(),    side_by_side()};
+                                      medium_two_ends(), wide_interior(),    side_by_side(),
+                                      arrest()};
   std::uint64_t number = 0;
   for (auto& recipe : recipes) recipe.seed = CounterRandom(seed, 5).bits(number++);
   return recipes;

@@ -43,7 +43,7 @@ void FilmScore::add(const FilmScore& other) {
   for (const auto member :
        {&FilmScore::links, &FilmScore::identities, &FilmScore::entries, &FilmScore::entry_intervals,
         &FilmScore::rates, &FilmScore::rate_intervals, &FilmScore::initial_intervals,
-        &FilmScore::waves, &FilmScore::speeds, &FilmScore::speed_intervals,
+        &FilmScore::waves, &FilmScore::fates, &FilmScore::speeds, &FilmScore::speed_intervals,
         &FilmScore::origin_waves, &FilmScore::sites})
     append(this->*member, other.*member);
   for (const auto member : {&FilmScore::entry_errors, &FilmScore::rate_errors,

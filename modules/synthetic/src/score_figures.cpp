@@ -90,6 +90,7 @@ void wave_figures(const FilmScore& s, Figures& f) {
   f.count("waves_true", "waves to be found", s.waves.of);
   f.percent("waves_found", "waves found", s.waves.value());
   f.count("waves_invented", "waves invented", s.waves_invented);
+  f.percent("fates_right", "found waves whose fate is right", s.fates.value());
   f.count("travelling_waves", "found waves that travel", s.speeds.of);
   f.percent("speed_given", "of these, with a speed", s.speeds.value());
   f.percent("speed_bias", "speed bias", middle(s.speed_errors));

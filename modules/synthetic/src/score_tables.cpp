@@ -64,8 +64,8 @@ void read_entries(const fs::path& folder, TruthFilm& film) {
 void read_waves(const fs::path& folder, TruthFilm& film) {
   each_row(folder / "waves.csv", [&](const TableRow& row) {
     film.waves.push_back({row.required_integer("tube"), row.required_integer("wave"),
-                          row.text("answer"), row.yes("travelling"), row.required_integer("nuclei"),
-                          row.number("speed_um_per_min")});
+                          row.text("answer"), row.text("fate"), row.yes("travelling"),
+                          row.required_integer("nuclei"), row.number("speed_um_per_min")});
   });
   each_row(folder / "origins.csv", [&](const TableRow& row) {
     film.origins.push_back({row.required_integer("tube"), row.required_integer("wave"),
@@ -98,8 +98,8 @@ class ResultReader {
     });
     read_table(root, "waves", [](const TableRow& row, ResultFilm& film, int acquisition) {
       film.waves.push_back({acquisition, row.required_integer("wave"), row.text("answer"),
-                            row.number("speed_um_per_min"), row.number("speed_lo_um_per_min"),
-                            row.number("speed_hi_um_per_min")});
+                            row.text("fate"), row.number("speed_um_per_min"),
+                            row.number("speed_lo_um_per_min"), row.number("speed_hi_um_per_min")});
     });
     read_table(root, "origins", [](const TableRow& row, ResultFilm& film, int acquisition) {
       if (!row.yes("claimed")) return;

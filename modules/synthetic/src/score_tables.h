@@ -35,6 +35,7 @@ struct TruthEntry {
 struct TruthWaveRow {
   int tube = 0, wave = 0;
   std::string answer;  ///< empty: nothing in particular is asked for
+  std::string fate;
   bool travelling = false;
   int nuclei = 0;
   std::optional<double> speed;
@@ -72,7 +73,7 @@ struct ResultEntry {
 
 struct ResultWave {
   int acquisition = 0, wave = 0;
-  std::string answer;
+  std::string answer, fate;
   std::optional<double> speed, speed_lo, speed_hi;
 };
 

@@ -83,6 +83,7 @@ class WaveScorer {
       if (!wave.answer.empty())
         ++score_.answers[{wave.answer, found ? found->answer : std::string("not found")}];
     }
+    if (found) score_.fates.count(found->fate == wave.fate);
     if (found && wave.travelling) score_speed(wave, *found);
     score_origins(wave, found);
   }

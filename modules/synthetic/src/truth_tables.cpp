@@ -119,15 +119,15 @@ Table entries_table(const Scene& scene, const std::vector<TruthWave>& waves) {
 }
 
 Table waves_table(const Scene& scene, const std::vector<TruthWave>& waves) {
-  auto made = table("waves", {"acquisition", "answer", "travelling", "complete"},
+  auto made = table("waves", {"acquisition", "answer", "fate", "travelling", "complete"},
                     {"tube", "wave", "cycle", "nuclei", "speed_um_per_min", "origins_in_view"});
   for (const auto& wave : waves) {
     const auto seen = std::count_if(wave.origins.begin(), wave.origins.end(),
                                     [](const TruthOrigin& origin) { return origin.judged; });
     made.rows.push_back(Row{scene.name, wave.answer ? wavefount::name_of(*wave.answer) : "",
-                            yes_no(wave.travelling), yes_no(wave.complete), whole(wave.tube),
-                            whole(wave.number), whole(wave.cycle),
-                            whole(static_cast<int>(wave.nuclei.size())),
+                            wavefount::name_of(wave.fate), yes_no(wave.travelling),
+                            yes_no(wave.complete), whole(wave.tube), whole(wave.number),
+                            whole(wave.cycle), whole(static_cast<int>(wave.nuclei.size())),
                             optional_cell(wave.speed_um_per_min), whole(static_cast<int>(seen))});
   }
   return made;

@@ -134,6 +134,24 @@ std::optional<Answer> answer_of(const Scene& scene, const TruthWave& wave, int e
   return judged == 1 ? Answer::single : Answer::coexisting;
 }
 
+/// As the contract has it: confirmed when at least half of the nuclei re-form, terminal when they
+/// are watched for twice the time in mitosis and do not.
+Fate fate_of(const Scene& scene, const std::vector<Member>& members) {
+  const double end = scene.times_min.back();
+  int reformed = 0;
+  int all = 0;
+  double last = 0;
+  for (const auto& member : members) {
+    if (!member.counts) continue;
+    ++all;
+    last = std::max(last, member.life->entry_min);
+    const auto* next = member.life + 1;
+    if (member.life != &member.nucleus->lives.back() && next->formed_min < end) ++reformed;
+  }
+  if (2 * reformed >= all) return Fate::confirmed;
+  return last + 2 * scene.waves.mitosis_min < end ? Fate::terminal : Fate::unconfirmed;
+}
+
 TruthWave wave_of(const Scene& scene, int tube, int cycle, const std::vector<Member>& members) {
   TruthWave wave;
   wave.tube = tube;
@@ -155,7 +173,9 @@ TruthWave wave_of(const Scene& scene, int tube, int cycle, const std::vector<Mem
     wave.speed_um_per_min =
         scene.waves.speed_um_per_min / (1 + scene.waves.speed_change * (cycle - 1));
   constexpr double clear_spread = 6;  // spread over jitter from which an order shows
-  wave.travelling = !scene.waves.together && static_cast<int>(wave.nuclei.size()) >= few_nuclei &&
+  wave.fate = fate_of(scene, members);
+  wave.travelling = !scene.waves.together && wave.fate != Fate::terminal &&
+                    static_cast<int>(wave.nuclei.size()) >= few_nuclei &&
                     last - first > clear_spread * scene.waves.jitter_min;
   list_origins(scene, members, wave);
   wave.answer = answer_of(scene, wave, entering);

@@ -66,7 +66,7 @@ struct SceneWaves {
   double jitter_min = 0.4;  ///< of the nuclei around the front
   double mitosis_min = 9;   ///< from entry until the nucleus re-forms
   double mitosis_sd_min = 0.7;
-  bool arrest = false;  ///< the last wave is one that nuclei do not come back from
+  bool arrest = false;  ///< nuclei do not come back from wave `arrest_cycle`
   int arrest_cycle = 0;
 };
 

@@ -44,6 +44,7 @@ struct FilmScore {
 
   Share waves;  ///< true waves that were found
   long waves_invented = 0;
+  Share fates;                       ///< found waves whose fate was named right
   Share speeds;                      ///< found travelling waves that got a speed
   std::vector<double> speed_errors;  ///< relative
   Share speed_intervals;

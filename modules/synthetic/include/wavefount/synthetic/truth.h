@@ -42,7 +42,8 @@ struct TruthWave {
   int number = 0;  ///< from 1 within the tube
   int cycle = 0;
   std::vector<int> nuclei;  ///< whose entry counts
-  bool travelling = false;  ///< a speed can be asked for
+  Fate fate = Fate::unconfirmed;
+  bool travelling = false;  ///< a speed can be asked for; never of a terminal wave
   bool complete = false;    ///< every nucleus in view enters while the film runs
   std::optional<double> speed_um_per_min;
   std::optional<Answer> answer;  ///< empty: nothing in particular can be asked for
