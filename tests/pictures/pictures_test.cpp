@@ -83,7 +83,7 @@ TEST_F(Pictures, ShowATubeWithoutNuclei) {
 
 TEST_F(Pictures, ShowMoreWavesThanPanels) {
   fake::Scene scene;
-  scene.frames = 420;
+  scene.interval_min = 7;
   scene.waves = 15;
   expect_good(fake::records_of(scene, work_file()));
 }

@@ -54,20 +54,23 @@ std::vector<Curve> all_curves(const RecordStore& records) {
   return curves;
 }
 
-/// One in each of equal stretches of the tube, the one with most entries there, longest seen among
-/// equals; in order along the tube.
+/// One in each of equal stretches of the tube: with most entries there, and among equals nearest to
+/// the middle of the stretch; in order along the tube.
 std::vector<Curve> chosen_curves(const RecordStore& records) {
   const auto curves = all_curves(records);
-  const double length_um = tube_or_field(records).length_um;
+  const double stretch_um = tube_or_field(records).length_um / most_curves;
   std::map<int, Curve> best;
   for (const auto& curve : curves) {
-    const double share = std::clamp(curve.along_um / length_um, 0.0, 1.0 - 1e-9);
-    auto& chosen = best[static_cast<int>(share * most_curves)];
-    const auto better = [](const Curve& one, const Curve& other) {
-      if (one.entries() != other.entries()) return one.entries() > other.entries();
-      return one.nucleus->points.size() > other.nucleus->points.size();
+    const int stretch =
+        static_cast<int>(std::clamp(curve.along_um / stretch_um, 0.0, most_curves - 0.5));
+    const auto off_middle_um = [&](const Curve& one) {
+      return std::abs(one.along_um - (stretch + 0.5) * stretch_um);
     };
-    if (!chosen.nucleus || better(curve, chosen)) chosen = curve;
+    auto& chosen = best[stretch];
+    const bool better =
+        !chosen.nucleus || curve.entries() > chosen.entries() ||
+        (curve.entries() == chosen.entries() && off_middle_um(curve) < off_middle_um(chosen));
+    if (better) chosen = curve;
   }
   std::vector<Curve> chosen;
   for (const auto& [stretch, curve] : best) chosen.push_back(curve);
@@ -207,11 +210,11 @@ class CurvesPicture {
                  fits ? Anchor::start : Anchor::end);
   }
 
-  /// Two digits of the standard error, and the time to as many decimals.
+  /// Two digits of the standard error, but no milliseconds, and the time to as many decimals.
   static std::string label_of(const Entry& entry) {
     if (!(entry.se_min > 0)) return fixed_text(entry.time_min, 2);
     const int decimals =
-        std::clamp(1 - static_cast<int>(std::floor(std::log10(entry.se_min))), 0, 4);
+        std::clamp(1 - static_cast<int>(std::floor(std::log10(entry.se_min))), 0, 3);
     return fixed_text(entry.time_min, decimals) + " ± " + fixed_text(entry.se_min, decimals);
   }
 

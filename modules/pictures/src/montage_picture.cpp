@@ -212,8 +212,8 @@ class MontagePicture {
     const double right = picture_width - left;
     canvas_.set(palette::grey);
     canvas_.text({right, y},
-                 "Frames as recorded, all at the same contrast; numbers are those of the "
-                 "tables.",
+                 "Frames as recorded, all at the same contrast. Orange: nuclei followed, numbered "
+                 "as in the tables. Pale: other candidates.",
                  small_size + 1, Anchor::end);
   }
 

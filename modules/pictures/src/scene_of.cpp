@@ -11,7 +11,7 @@ namespace {
 
 constexpr double gap = 24;  // pixels between panels
 /// Panels of this share of the largest possible size are taken where they fill the width better.
-constexpr double good_enough = 0.75;
+constexpr double good_enough = 0.6;
 
 Panels arranged_in(int columns, int count, double width, double height, const Box& room,
                    double heading) {

@@ -80,7 +80,8 @@ class SheetFiller {
       if (number)
         worksheet_write_number(sheet_, at, i, *number, formats_[i]);
       else
-        write_text(sheet_, at, i, cells[i], workbook_.format(CellStyle::text));
+        write_text(sheet_, at, i, cells[i],
+                   workbook_.format(i == 0 ? CellStyle::text : CellStyle::word));
     }
   }
 

@@ -104,6 +104,9 @@ void WorkbookFile::make_styles() {
 
 void WorkbookFile::make_text_styles() {
   styles_[CellStyle::text] = add_format(false, ink, body_size);
+  auto* word = add_format(false, ink, body_size);  // clear of the number to its left
+  format_set_indent(word, 1);
+  styles_[CellStyle::word] = word;
   auto* wrapped = add_format(false, ink, body_size);
   format_set_text_wrap(wrapped);
   format_set_indent(wrapped, 1);

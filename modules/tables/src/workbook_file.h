@@ -11,6 +11,7 @@ namespace wavefount {
 /// How a cell looks; see `WorkbookFile::format`.
 enum class CellStyle {
   text,
+  word,
   wrapped,
   label,
   figure,
