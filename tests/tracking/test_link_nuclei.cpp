@@ -247,6 +247,15 @@ TEST(LinkNuclei, EmptyTubeHoldsNoNucleiButOnesThatChangeStay) {
   EXPECT_NEAR(linked.nuclei.nuclei[0].points[0].x_um, 700, 1);
 }
 
+TEST(LinkNuclei, FaintFlickerIsNoNucleusButOneJustFormedIs) {
+  auto made = cycling(false);
+  for (int i = 0; i < 80; i += i % 3 == 0 ? 1 : 2) made.see(i, i + 1, sighting(700, 50, 20, 20));
+  for (int i = 72; i < 80; ++i) made.see(i, i + 1, sighting(900, 50, 6.0 * (i - 71)));
+  const auto nuclei = made.linked().nuclei.nuclei;
+  ASSERT_EQ(nuclei.size(), 4u);
+  EXPECT_NEAR(nuclei[3].points[0].x_um, 900, 1);
+}
+
 TEST(LinkNuclei, OrderOfSightingsChangesNothing) {
   PointFilmPlan plan;
   plan.seed = 4;
