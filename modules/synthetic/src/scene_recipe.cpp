@@ -70,7 +70,7 @@ void lay_spots(const SceneRecipe& recipe, RandomSequence& random, Scene& scene) 
   }
   for (int i = 0; i < recipe.bubbles; ++i) {
     const double along = random.uniform(0.2, 0.8) * tube.length_um;
-    const double radius = 0.22 * tube.width_um;
+    const double radius = 0.14 * tube.width_um;
     const double across = (i % 2 == 0 ? 1 : -1) * (tube.width_um / 2 - radius);
     scene.nuisances.bubbles.push_back({point_at(tube, along, across), radius, 60});
   }
