@@ -68,16 +68,20 @@ void judge_origins(const Scene& scene, const TrueWave& truth, const Wave& wave, 
   }
 }
 
+double arm_z(const Wave& wave, const TrueWave& truth) {
+  const auto mean = mean_slowness(wave.fronts);
+  return mean ? (mean->min_per_um - truth.slowness_min_per_um) / mean->se_min_per_um : 0;
+}
+
 void print_wave(const Scene& scene, const TrueWave& truth, const Wave& wave, const SourceFit& fit) {
   std::printf(
-      "  wave %d n %zu %s jitter %.2f speed %.1f (true %.1f, z %.1f; draws %.1f z2 %.1f); true at",
+      "  wave %d n %zu %s jitter %.2f speed %.1f (true %.1f, z %.1f; j %.2f z2 %.1f); true at",
       wave.number, wave.entries.size(), name_of(wave.answer).c_str(), wave.jitter_min,
       wave.slowness ? 1 / wave.slowness->min_per_um : 0.0, 1 / truth.slowness_min_per_um,
       wave.slowness
           ? (wave.slowness->min_per_um - truth.slowness_min_per_um) / wave.slowness->se_min_per_um
           : 0.0,
-      1 / fit.slowness_min_per_um,
-      (fit.slowness_min_per_um - truth.slowness_min_per_um) / fit.slowness_se_min_per_um);
+      fit.jitter_min, arm_z(wave, truth));
   for (const auto& source : truth.sources_um) std::printf(" (%.0f %.0f)", source.x, source.y);
   std::printf("; spacing %.0f; found", scene.spacing_um);
   for (const auto& origin : wave.origins)

@@ -35,7 +35,25 @@ SceneOptions usual(Kind kind, std::uint64_t seed) {
   options.speed_variation = between(8, 0, 0.2);
   options.moving_um = between(9, 0, 60);
   options.cycles = 4;
+  if (std::getenv("WAVEFOUNT_WAVE_EVEN") != nullptr) options.speed_variation = 0;
   return options;
+}
+
+/// Scenes in which a front needs a third of a period from nucleus to nucleus, so that several waves
+/// are under way at once.
+TEST(Accuracy, OverlappingWaves) {
+  Tally tally;
+  for (int i = 0; i < scene_count(); ++i) {
+    auto options = usual(Kind::single, static_cast<std::uint64_t>(i) + 500);
+    options.speed_um_per_min = options.spacing_um / (0.3 * options.period_min);
+    options.moving_um = 0;
+    options.cycles = 6;
+    const auto scene = make_scene(options);
+    judge(scene, measure(scene, 11), tally);
+  }
+  print("thin, overlapping", tally);
+  EXPECT_GE(tally.found, 0.95 * tally.waves);
+  EXPECT_GE(tally.right, 0.9 * tally.sources);
 }
 
 Tally run(const std::string& name, Kind kind, bool wide, bool at_boundary) {

@@ -52,7 +52,12 @@ void measure_front(Wave& wave, std::size_t at, const WaveView& view, const Arriv
                              fields.spacing_um,
                              !fields.line};
   wave.fronts = measure_fronts(sources, front_view);
-  wave.slowness = mean_slowness(wave.fronts);
+  // The draws know of the sources' uncertainty and of a speed that varies along the tube; a mean
+  // of regressions does not, and holds the truth too seldom.
+  wave.slowness =
+      fit.draws.empty()
+          ? mean_slowness(wave.fronts)
+          : std::optional(slowness_with_speed(fit.slowness_min_per_um, fit.slowness_se_min_per_um));
   wave.jitter_min = fit.jitter_min;
 }
 

@@ -38,7 +38,7 @@ class Merging {
     const auto count = draw.starts_min.size();
     joined_.resize(count);
     std::iota(joined_.begin(), joined_.end(), 0);
-    absorbed_ = joined_;
+    absorbed_ = beyond_ = joined_;
     for (int i = 0; i < static_cast<int>(count); ++i) minima_.push_back({i, std::nullopt, false});
   }
 
@@ -55,7 +55,23 @@ class Merging {
     auto& minimum = minima_[younger];
     minimum.prominence = saddle.time - draw_.starts_min[younger];
     minimum.behind_gap = saddle.bridge;
+    beyond_[younger] = beyond;
     if (*minimum.prominence < least_) absorbed_[younger] = beyond;
+  }
+
+  /// One nucleus ahead of its neighbours whom nobody follows is jitter, not a source.
+  void absorb_loners() {
+    for (bool again = true; again;) {
+      again = false;
+      std::vector<int> members(minima_.size(), 0);
+      for (const int source : draw_.source) ++members[root(absorbed_, source)];
+      for (int i = 0; i < static_cast<int>(minima_.size()); ++i) {
+        if (absorbed_[i] != i || members[i] != 1 || beyond_[i] == i) continue;
+        absorbed_[i] = beyond_[i];
+        again = true;
+        break;
+      }
+    }
   }
 
   Basins result() const {
@@ -85,7 +101,7 @@ class Merging {
 
   const SourceDraw& draw_;
   double least_;
-  std::vector<int> joined_, absorbed_;
+  std::vector<int> joined_, absorbed_, beyond_;
   std::vector<Minimum> minima_;
 };
 
@@ -95,6 +111,7 @@ Basins find_minima(const SourceDraw& draw, const std::vector<Link>& links,
                    double least_prominence_min) {
   Merging merging(draw, least_prominence_min);
   for (const auto& saddle : saddles_of(draw, links)) merging.meet(saddle);
+  merging.absorb_loners();
   return merging.result();
 }
 

@@ -15,11 +15,11 @@ namespace {
 constexpr double infinity = std::numeric_limits<double>::infinity();
 constexpr std::size_t most_sources = 8;
 constexpr std::size_t least_arrivals = 5;
-// Prior: each further source a third as likely; fronts from 3000 µm/min (faster than a film of
-// a tube resolves) down to 1; slowness along the tube within some ten per cent; jitter from a
+// Prior: each further source a third as likely; fronts from 30,000 µm/min (all at once, for any
+// film) down to 1; slowness along the tube within some ten per cent; jitter from a
 // second to a third of a period.
 const double log_another_source = std::log(0.33);
-const double least_log_slowness = std::log(1.0 / 3000);
+const double least_log_slowness = std::log(1.0 / 30000);
 const double most_log_slowness = std::log(1.0);
 const double least_log_jitter = std::log(0.02);
 const double most_log_jitter = std::log(12.0);
@@ -420,32 +420,39 @@ class Chain {
 
   void move_place() {
     State& proposed = proposed_ = state_;
-    auto& source = proposed.sources[some_source()];
-    const double reach = 0.4 * model_.region().spacing_um * stretch();
+    const int which = some_source();
+    auto& source = proposed.sources[which];
+    const double reach = model_.region().spacing_um * stretch();
     source.place.x += reach * dice_.normal();
     if (!model_.on_line()) source.place.y += reach * dice_.normal();
     model_.set_arrivals(proposed, source);
-    decide(proposed, 0);
+    if (dice_.uniform() < 0.3) return decide(proposed, 0);
+    hold_front(proposed, which);
+    decide_turned(proposed);
   }
 
-  /// A change of slowness turns each front around its middle, so that it stays near its nuclei:
-  /// starts move by what the others fix, which keeps volumes.
+  /// Shifts a source's start so that its front reaches its nuclei on average when it did: what
+  /// counts for the likelihood hardly moves. The shift depends on all but the start, so volumes
+  /// are kept.
+  void hold_front(State& proposed, int which) const {
+    auto& source = proposed.sources[which];
+    double change = 0, members = 0;
+    for (std::size_t i = 0; i < state_.label.size(); ++i) {
+      if (state_.label[i] != which) continue;
+      change += source.arrivals[i] - state_.sources[which].arrivals[i];
+      ++members;
+    }
+    if (members == 0) return;
+    source.start -= change / members;
+    for (double& arrival : source.arrivals) arrival -= change / members;
+  }
+
   void turn(State& proposed) const {
     model_.set_curve(proposed);
-    for (std::size_t k = 0; k < proposed.sources.size(); ++k) {
-      double change = 0, members = 0;
-      for (std::size_t i = 0; i < state_.label.size(); ++i) {
-        if (state_.label[i] != static_cast<int>(k)) continue;
-        change += proposed.sources[k].arrivals[i] - state_.sources[k].arrivals[i];
-        ++members;
-      }
-      if (members == 0) continue;
-      proposed.sources[k].start -= change / members;
-      for (double& arrival : proposed.sources[k].arrivals) arrival -= change / members;
-    }
+    for (int k = 0; k < static_cast<int>(proposed.sources.size()); ++k) hold_front(proposed, k);
   }
 
-  /// The way back turns around the labels of the proposal; where they changed it is another way.
+  /// The way back holds the fronts at the proposal's labels; where they changed it is another way.
   bool same_labels(const State& proposed) const { return proposed.label == state_.label; }
 
   void decide_turned(State& proposed) {

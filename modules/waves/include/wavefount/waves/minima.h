@@ -23,7 +23,8 @@ struct Basins {
 /// The minima of a drawn field by persistence of sublevel sets (Edelsbrunner, Letscher & Zomorodian
 /// 2002). Fronts of two sources meet first over the link of neighbours on which they collide
 /// earliest; a source whose saddle towards an earlier one lies less than `least_prominence_min`
-/// after its start is part of that basin. Sources without nuclei of their own are not seen.
+/// after its start, or that is followed by no nucleus, is part of that basin. Sources without
+/// nuclei of their own are not seen.
 Basins find_minima(const SourceDraw& draw, const std::vector<Link>& links,
                    double least_prominence_min);
 
