@@ -88,7 +88,7 @@ double local_slowness(double x, const SceneOptions& options) {
 }
 
 double travel_min(Point from, Point to, const SceneOptions& options) {
-  constexpr int steps = 20;
+  constexpr int steps = 40;
   double sum = 0;
   for (int i = 0; i < steps; ++i)
     sum += local_slowness(from.x + (i + 0.5) / steps * (to.x - from.x), options);
@@ -131,14 +131,15 @@ void make_wave(const SceneOptions& options, const std::vector<Point>& places,
                std::vector<Event>& events, Dice& dice) {
   TrueWave truth;
   std::vector<int> basin(sources.size(), 0);
-  double slowness = 0;
+  double left = 1e300, right = -1e300;
   for (int i = 0; i < static_cast<int>(places.size()); ++i) {
     Arrival arrival{0, -1};
     if (!sources.empty()) arrival = arrival_at(places[i], sources, options);
     if (options.kind == Kind::incoherent) arrival.time = dice.between(0, 0.7) * options.period_min;
     if (arrival.source >= 0) ++basin[arrival.source];
-    slowness += local_slowness(places[i].x, options) / static_cast<double>(places.size());
     if (dice.between(0, 1) < options.missing_share) continue;
+    left = std::min(left, places[i].x);
+    right = std::max(right, places[i].x);
     const Point place{places[i].x + 8 * dice.normal(), places[i].y + 4 * dice.normal()};
     const double time = start + arrival.time + options.jitter_min * dice.normal() +
                         options.timing_error_min * dice.normal();
@@ -149,7 +150,9 @@ void make_wave(const SceneOptions& options, const std::vector<Point>& places,
   for (std::size_t i = 0; i < sources.size(); ++i)
     if (basin[i] >= 2 && options.kind != Kind::entering)
       truth.sources_um.push_back(sources[i].place);
-  truth.slowness_min_per_um = sources.empty() ? 0 : slowness;
+  truth.slowness_min_per_um = sources.empty() || right <= left
+                                  ? 0
+                                  : travel_min({left, 0}, {right, 0}, options) / (right - left);
   scene.waves.push_back(truth);
 }
 

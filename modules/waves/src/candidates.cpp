@@ -62,6 +62,7 @@ struct Sample {
   int draw = 0;
   int leader = 0;
   Point place_um;
+  Point matched_um;  ///< where nuclei can tell it: within half a spacing of the leader
   double value = 0;
   std::optional<double> prominence;
   bool behind_gap = false;
@@ -99,6 +100,13 @@ bool enters(Point source, int leader, const Board& board) {
   });
 }
 
+/// From a place towards another, at most so far.
+Point towards(Point from, Point to, double most) {
+  const double away = distance(from, to);
+  const double share = away > most ? most / away : 1;
+  return {from.x + share * (to.x - from.x), from.y + share * (to.y - from.y)};
+}
+
 std::vector<Sample> samples_of(const SourceDraw& draw, int number, const Board& board) {
   // A source that leads its surroundings stands out by the way to its neighbours; less than half
   // a spacing's travel is not told from the scatter of single nuclei.
@@ -114,6 +122,8 @@ std::vector<Sample> samples_of(const SourceDraw& draw, int number, const Board& 
     sample.place_um = draw.places_um[minimum.source];
     sample.entering = enters(sample.place_um, sample.leader, board);
     if (sample.entering) sample.place_um = board.arrivals.places_um[sample.leader];
+    sample.matched_um = towards(board.arrivals.places_um[sample.leader], sample.place_um,
+                                board.search.spacing_um / 2);
     sample.value = draw.starts_min[minimum.source];
     sample.prominence = minimum.prominence;
     sample.behind_gap = minimum.behind_gap;
@@ -179,8 +189,8 @@ class Matching {
     for (const auto& sample : samples_) {
       if (sample.candidate != -1) continue;
       auto& sum = sums[sample.leader];
-      sum.x += sample.place_um.x;
-      sum.y += sample.place_um.y;
+      sum.x += sample.matched_um.x;
+      sum.y += sample.matched_um.y;
       ++counts[sample.leader];
     }
     for (auto& [leader, sum] : sums) sum = {sum.x / counts[leader], sum.y / counts[leader]};
@@ -188,7 +198,7 @@ class Matching {
   }
 
   bool near(const Sample& sample, Point centre) const {
-    return distance(sample.place_um, centre) <= spacing_um_;
+    return distance(sample.matched_um, centre) <= spacing_um_;
   }
 
   std::vector<char> usual_basin(Point centre) const {

@@ -18,27 +18,29 @@ struct Vote {
   double weight = 0;
 };
 
+/// Sums over neighbours for a gradient of time in space.
+struct GradientSums {
+  double xx = 0, xy = 0, yy = 0, xt = 0, yt = 0;
+};
+
 /// The one that gathers votes and numbers.
 class Unwrapping {
  public:
   Unwrapping(const std::vector<WaveEntry>& entries, const Chronology& chronology)
       : entries_(entries), chronology_(chronology), number_(entries.size(), 0) {
     for (const auto& station : chronology.stations) add_successions(station);
-    for (const auto& link : chronology.graph.links) add_neighbours(link);
-    touching_.resize(entries.size());
-    for (int i = 0; i < static_cast<int>(votes_.size()); ++i) {
-      touching_[votes_[i].a].push_back(i);
-      touching_[votes_[i].b].push_back(i);
-    }
+    own_votes_ = votes_.size();
+    gather_neighbours();
   }
 
   std::vector<int> solve() {
     number_by_tree();
-    constexpr int most_sweeps = 30;
-    for (int sweep = 0; sweep < most_sweeps; ++sweep) {
-      const bool stations_moved = improve_stations();
-      const bool sides_moved = improve_sides();
-      if (!stations_moved && !sides_moved) break;
+    improve();
+    constexpr int looks = 2;
+    for (int look = 0; look < looks; ++look) {
+      expect_differences();
+      gather_neighbours();
+      improve();
     }
     align_parts();
     drop_repeats();
@@ -51,8 +53,18 @@ class Unwrapping {
     return chronology_.period.at((entries_[a].time_min + entries_[b].time_min) / 2);
   }
 
-  void vote(int a, int b, int least_step, double share) {
-    const double periods = (entries_[b].time_min - entries_[a].time_min) / period_between(a, b);
+  void improve() {
+    constexpr int most_sweeps = 30;
+    for (int sweep = 0; sweep < most_sweeps; ++sweep) {
+      const bool stations_moved = improve_stations();
+      const bool sides_moved = improve_sides();
+      if (!stations_moved && !sides_moved) break;
+    }
+  }
+
+  void vote(int a, int b, int least_step, double share, double expected_min = 0) {
+    const double periods =
+        (entries_[b].time_min - entries_[a].time_min - expected_min) / period_between(a, b);
     const int step = std::max(static_cast<int>(std::lround(periods)), least_step);
     const double certainty = 1 - 2 * std::abs(periods - step);
     if (certainty <= 0) return;
@@ -83,8 +95,66 @@ class Unwrapping {
     const double share = chronology_.spacing_um / std::max(link.length_um, chronology_.spacing_um);
     for (const int a : from.entries) {
       const int b = nearest_in_time(to, entries_[a].time_min);
-      if (nearest_in_time(from, entries_[b].time_min) == a) vote(a, b, -1, share);
+      if (nearest_in_time(from, entries_[b].time_min) == a)
+        vote(a, b, -1, share, expected_difference(a, b));
     }
+  }
+
+  void gather_neighbours() {
+    votes_.resize(own_votes_);
+    for (const auto& link : chronology_.graph.links) add_neighbours(link);
+    touching_.assign(entries_.size(), {});
+    for (int i = 0; i < static_cast<int>(votes_.size()); ++i) {
+      touching_[votes_[i].a].push_back(i);
+      touching_[votes_[i].b].push_back(i);
+    }
+  }
+
+  /// Over a long link a front may need more than half a period; what it needed on both sides of
+  /// the link, where links are short, tells. Gradients from the numbers found so far, by least
+  /// squares over the neighbours with the same number; directions without neighbours stay flat.
+  void expect_differences() {
+    gradients_.assign(entries_.size(), {});
+    for (const auto& one : votes_) {
+      if (number_[one.a] != number_[one.b]) continue;
+      add_to(gradients_[one.a], one.a, one.b, 1);
+      add_to(gradients_[one.b], one.b, one.a, 1);
+    }
+  }
+
+  void add_to(GradientSums& sums, int own, int near, double sign) const {
+    const double dx = entries_[near].x_um - entries_[own].x_um;
+    const double dy = entries_[near].y_um - entries_[own].y_um;
+    const double dt = entries_[near].time_min - entries_[own].time_min;
+    sums.xx += sign * dx * dx;
+    sums.xy += sign * dx * dy;
+    sums.yy += sign * dy * dy;
+    sums.xt += sign * dx * dt;
+    sums.yt += sign * dy * dt;
+  }
+
+  /// Expected time over a way, from an entry's neighbours less one.
+  double expected_over(int own, int but, double dx, double dy) const {
+    auto sums = gradients_[own];
+    if (number_[own] == number_[but]) add_to(sums, own, but, -1);
+    const double ridge = 0.1 * chronology_.spacing_um * chronology_.spacing_um;
+    const double xx = sums.xx + ridge;
+    const double yy = sums.yy + ridge;
+    const double determinant = xx * yy - sums.xy * sums.xy;
+    if (determinant <= 0) return 0;
+    return ((sums.xt * yy - sums.yt * sums.xy) * dx + (sums.yt * xx - sums.xt * sums.xy) * dy) /
+           determinant;
+  }
+
+  double expected_difference(int a, int b) const {
+    if (gradients_.empty()) return 0;
+    const double dx = entries_[b].x_um - entries_[a].x_um;
+    const double dy = entries_[b].y_um - entries_[a].y_um;
+    const double from_a = expected_over(a, b, dx, dy);
+    const double from_b = expected_over(b, a, dx, dy);
+    // Opposite signs: a front starts or two collide in between.
+    if (from_a * from_b <= 0) return 0;
+    return std::copysign(std::min(std::abs(from_a), std::abs(from_b)), from_a);
   }
 
   void number_by_tree() {
@@ -290,6 +360,8 @@ class Unwrapping {
   std::vector<int> number_, part_, dropped_;
   std::vector<char> chosen_;
   std::vector<Vote> votes_;
+  std::size_t own_votes_ = 0;  // successions come first
+  std::vector<GradientSums> gradients_;
   std::vector<std::vector<int>> touching_;
 };
 
