@@ -148,6 +148,32 @@ TEST_F(Pictures, KymographFollowsTheWaveAndTheDrift) {
   EXPECT_LT(kymograph.at(row + 3, column), 15);
 }
 
+/// Weighted middle of the light around a column.
+double middle_of_light(const Kymograph& kymograph, std::size_t row, int from, int to) {
+  double sum = 0, moment = 0;
+  for (int column = from; column < to; ++column) {
+    const double light = std::max(0.0F, kymograph.at(row, column) - 420);
+    sum += light;
+    moment += light * column;
+  }
+  return moment / sum;
+}
+
+TEST_F(Pictures, KymographFollowsDriftFinerThanAReducedPixel) {
+  fake::Scene scene;
+  scene.drift_px = 3.3;
+  scene.reduction = 4;
+  scene.waves = 0;  // nuclei that stay
+  scene.spacing_um = 300;
+  const auto kymograph = kymograph_of(fake::records_of(scene, work_file()), 60);
+  const double um_a_column = scene.length_um / kymograph.columns;
+  const int from = static_cast<int>(350 / um_a_column);
+  const int to = static_cast<int>(550 / um_a_column);
+  const double first = middle_of_light(kymograph, 0, from, to);
+  for (std::size_t row = 0; row < kymograph.frames.size(); ++row)
+    EXPECT_NEAR(middle_of_light(kymograph, row, from, to) * um_a_column, first * um_a_column, 0.6);
+}
+
 TEST_F(Pictures, KymographReadsNoMoreFramesThanItShows) {
   fake::Scene scene;
   scene.frames = 300;

@@ -16,8 +16,12 @@ constexpr double dark_share = 0.1;
 /// With fewer, the darkest tenth is no ground but one frame's noise.
 constexpr std::size_t fewest_frames_for_ground = 10;
 
+/// Beyond this many, pixels are skipped evenly: a column's mean is settled by a hundred.
+constexpr int enough_pixels = 80'000;
+
 struct Pixel {
-  int x = 0, y = 0, column = 0;
+  int x = 0, y = 0;
+  float column = 0;  ///< where along the tube its centre lies, in columns
 };
 
 int columns_of(const Tube& tube, const ReducedFilm& film, double pixel_um) {
@@ -25,18 +29,50 @@ int columns_of(const Tube& tube, const ReducedFilm& film, double pixel_um) {
   return std::clamp(static_cast<int>(pixels), 1, most_columns);
 }
 
+/// Places in the tube at every fourth reduced pixel, and in between by interpolation: places change
+/// smoothly, and the axis of a bent tube has many pieces.
+class PlaceGrid {
+ public:
+  PlaceGrid(const Tube& tube, const ReducedFilm& film, double pixel_um)
+      : nodes_across_(film.width() / step + 2) {
+    const double centre = (film.factor() - 1) / 2.0;
+    for (int y = 0; y <= film.height() / step + 1; ++y)
+      for (int x = 0; x < nodes_across_; ++x)
+        nodes_.push_back(tube.place({(film.left() + x * step * film.factor() + centre) * pixel_um,
+                                     (film.top() + y * step * film.factor() + centre) * pixel_um}));
+  }
+
+  /// along_um and across_um at a reduced pixel.
+  Point at(int x, int y) const {
+    const auto node = static_cast<std::size_t>(y / step * nodes_across_ + x / step);
+    const auto below = node + static_cast<std::size_t>(nodes_across_);
+    const double right = double(x % step) / step;
+    const double down = double(y % step) / step;
+    const auto mixed = [&](double TubePlace::*value) {
+      return (1 - down) * ((1 - right) * nodes_[node].*value + right * nodes_[node + 1].*value) +
+             down * ((1 - right) * nodes_[below].*value + right * nodes_[below + 1].*value);
+    };
+    return {mixed(&TubePlace::along_um), mixed(&TubePlace::across_um)};
+  }
+
+ private:
+  static constexpr int step = 4;
+  int nodes_across_;
+  std::vector<TubePlace> nodes_;
+};
+
 /// The reduced pixels inside the tube and where along it they lie.
 std::vector<Pixel> pixels_of(const Tube& tube, const ReducedFilm& film, double pixel_um,
                              int columns) {
+  const PlaceGrid grid(tube, film, pixel_um);
   std::vector<Pixel> pixels;
-  const double centre = (film.factor() - 1) / 2.0;
+  const int stride = 1 + film.width() * film.height() / enough_pixels;
   for (int y = 0; y < film.height(); ++y) {
-    for (int x = 0; x < film.width(); ++x) {
-      const auto place = tube.place({(film.left() + x * film.factor() + centre) * pixel_um,
-                                     (film.top() + y * film.factor() + centre) * pixel_um});
-      if (std::abs(place.across_um) > tube.width_um / 2) continue;
-      const double share = place.along_um / tube.length_um;
-      if (share >= 0 && share < 1) pixels.push_back({x, y, static_cast<int>(share * columns)});
+    for (int x = y % stride; x < film.width(); x += stride) {
+      const auto [along_um, across_um] = grid.at(x, y);
+      if (std::abs(across_um) > tube.width_um / 2) continue;
+      const double share = along_um / tube.length_um;
+      if (share >= 0 && share < 1) pixels.push_back({x, y, static_cast<float>(share * columns)});
     }
   }
   return pixels;
@@ -58,23 +94,45 @@ std::vector<int> spread_frames(const FilmDescription& film, int available, int m
   return frames;
 }
 
+/// Columns that a shift of one reduced pixel along x and along y moves the light by.
+Point columns_a_pixel(const Tube& tube, const ReducedFilm& film, double pixel_um, int columns) {
+  const double x = tube.axis_um.back().x - tube.axis_um.front().x;
+  const double y = tube.axis_um.back().y - tube.axis_um.front().y;
+  const double chord = std::max(std::hypot(x, y), 1e-9);
+  const double scale = film.factor() * pixel_um * columns / tube.length_um;
+  return {scale * x / chord, scale * y / chord};
+}
+
+/// One frame's mean across the tube. Drift is followed in whole reduced pixels; what is left of it
+/// moves the light along the tube, shared between two columns.
 void add_row(const ReducedFilm& film, const std::vector<Pixel>& pixels, int frame, Point drift_px,
-             Kymograph& kymograph) {
+             Point per_pixel, Kymograph& kymograph) {
   const auto image = film.read(frame);
   const float* values = image->GetBufferPointer();
-  const int shift_x = static_cast<int>(std::lround(drift_px.x / film.factor()));
-  const int shift_y = static_cast<int>(std::lround(drift_px.y / film.factor()));
+  const Point drift = {drift_px.x / film.factor(), drift_px.y / film.factor()};
+  const int shift_x = static_cast<int>(std::lround(drift.x));
+  const int shift_y = static_cast<int>(std::lround(drift.y));
+  const auto rest =
+      static_cast<float>((drift.x - shift_x) * per_pixel.x + (drift.y - shift_y) * per_pixel.y);
+  // One column beyond each end takes what falls outside.
   const auto columns = static_cast<std::size_t>(kymograph.columns);
-  std::vector<float> sum(columns, 0), count(columns, 0);
+  std::vector<float> sum(columns + 2, 0), weight(columns + 2, 0);
   for (const auto& pixel : pixels) {
     const int x = pixel.x + shift_x;
     const int y = pixel.y + shift_y;
     if (x < 0 || y < 0 || x >= film.width() || y >= film.height()) continue;
-    sum[static_cast<std::size_t>(pixel.column)] += values[y * film.width() + x];
-    count[static_cast<std::size_t>(pixel.column)] += 1;
+    const float at =
+        std::clamp(pixel.column - rest + 0.5F, 0.0F, static_cast<float>(columns) + 0.99F);
+    const auto column = static_cast<std::size_t>(at);
+    const float later = at - static_cast<float>(column);
+    const float value = values[y * film.width() + x];
+    sum[column] += (1 - later) * value;
+    weight[column] += 1 - later;
+    sum[column + 1] += later * value;
+    weight[column + 1] += later;
   }
-  for (std::size_t i = 0; i < columns; ++i)
-    kymograph.light.push_back(count[i] > 0 ? sum[i] / count[i] : -1);
+  for (std::size_t i = 1; i <= columns; ++i)
+    kymograph.light.push_back(weight[i] > 0 ? sum[i] / weight[i] : -1);
 }
 
 }  // namespace
@@ -88,8 +146,9 @@ Kymograph kymograph_of(const RecordStore& records, int most_frames) {
   kymograph.columns = columns_of(tube, *reduced, pixel_um_of(film));
   kymograph.frames = spread_frames(film, reduced->frames(), most_frames);
   const auto pixels = pixels_of(tube, *reduced, pixel_um_of(film), kymograph.columns);
+  const auto per_pixel = columns_a_pixel(tube, *reduced, pixel_um_of(film), kymograph.columns);
   for (const int frame : kymograph.frames)
-    add_row(*reduced, pixels, frame, drift_px_of(records, frame), kymograph);
+    add_row(*reduced, pixels, frame, drift_px_of(records, frame), per_pixel, kymograph);
   return kymograph;
 }
 
