@@ -108,9 +108,10 @@ Point towards(Point from, Point to, double most) {
 }
 
 std::vector<Sample> samples_of(const SourceDraw& draw, int number, const Board& board) {
-  // A source that leads its surroundings stands out by the way to its neighbours; less than half
-  // a spacing's travel is not told from the scatter of single nuclei.
-  constexpr double least_spacings = 0.5;
+  // Two sources less than two spacings apart, or one that the other's front has almost reached
+  // when it starts, are not told from the scatter of single nuclei: the saddle between them lies
+  // less than a spacing's travel above.
+  constexpr double least_spacings = 1;
   const auto basins = find_minima(
       draw, board.links, least_spacings * board.search.spacing_um * draw.slowness_min_per_um);
   std::vector<Sample> samples;
@@ -143,6 +144,11 @@ double common(const std::vector<char>& one, const std::vector<char>& two) {
   return sum;
 }
 
+/// Where the minima of one leader usually lie.
+struct Usual {
+  Point place, matched;
+};
+
 /// Gathers samples around the places where most of them lie.
 class Matching {
  public:
@@ -165,8 +171,8 @@ class Matching {
 
  private:
   /// The leader around whose usual minimum most unclaimed ones lie within a spacing.
-  std::optional<Point> densest() const {
-    std::optional<Point> best;
+  std::optional<Usual> densest() const {
+    std::optional<Usual> best;
     int most = 0;
     for (const auto& [leader, place] : usual_places()) {
       int last = -1, count = 0;
@@ -183,25 +189,32 @@ class Matching {
   }
 
   /// Mean place of the unclaimed minima that each arrival leads.
-  std::map<int, Point> usual_places() const {
-    std::map<int, Point> sums;
+  std::map<int, Usual> usual_places() const {
+    std::map<int, Usual> sums;
     std::map<int, double> counts;
     for (const auto& sample : samples_) {
       if (sample.candidate != -1) continue;
       auto& sum = sums[sample.leader];
-      sum.x += sample.matched_um.x;
-      sum.y += sample.matched_um.y;
+      sum.place.x += sample.place_um.x;
+      sum.place.y += sample.place_um.y;
+      sum.matched.x += sample.matched_um.x;
+      sum.matched.y += sample.matched_um.y;
       ++counts[sample.leader];
     }
-    for (auto& [leader, sum] : sums) sum = {sum.x / counts[leader], sum.y / counts[leader]};
+    for (auto& [leader, sum] : sums) {
+      const double count = counts[leader];
+      sum = {{sum.place.x / count, sum.place.y / count},
+             {sum.matched.x / count, sum.matched.y / count}};
+    }
     return sums;
   }
 
-  bool near(const Sample& sample, Point centre) const {
-    return distance(sample.matched_um, centre) <= spacing_um_;
+  bool near(const Sample& sample, const Usual& centre) const {
+    return distance(sample.matched_um, centre.matched) <= spacing_um_ ||
+           distance(sample.place_um, centre.place) <= spacing_um_;
   }
 
-  std::vector<char> usual_basin(Point centre) const {
+  std::vector<char> usual_basin(const Usual& centre) const {
     std::vector<double> counts(arrivals_.places_um.size(), 0.0);
     double samples = 0;
     for (const auto& sample : samples_) {
@@ -214,7 +227,7 @@ class Matching {
     return usual;
   }
 
-  std::vector<int> claim(Point centre, int number) {
+  std::vector<int> claim(const Usual& centre, int number) {
     const auto usual = usual_basin(centre);
     std::vector<int> members;
     for (int i = 0; i < static_cast<int>(samples_.size()); ++i) {

@@ -44,16 +44,11 @@ void measure_front(Wave& wave, std::size_t at, const WaveView& view, const Arriv
     neighbours[link.a].push_back(link.b);
     neighbours[link.b].push_back(link.a);
   }
-  const FrontView front_view{&arrivals,
-                             &fit.astray,
+  const FrontView front_view{&arrivals, &fit,
                              basins_of(fields.candidates[at], sources.size(), count),
-                             std::move(neighbours),
-                             fit.jitter_min,
-                             fields.spacing_um,
-                             !fields.line};
+                             std::move(neighbours), fields.spacing_um};
   wave.fronts = measure_fronts(sources, front_view);
-  // The draws know of the sources' uncertainty and of a speed that varies along the tube; a mean
-  // of regressions does not, and holds the truth too seldom.
+  // With draws: over the whole stretch of nuclei at once, source and collisions included.
   wave.slowness =
       fit.draws.empty()
           ? mean_slowness(wave.fronts)

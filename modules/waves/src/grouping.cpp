@@ -67,7 +67,8 @@ std::vector<Link> wave_links(const std::vector<int>& members, const WaveEntries&
   std::erase_if(links, [&](const Link& link) {
     const double from = entries.entries[members[link.a]].time_min;
     const double to = entries.entries[members[link.b]].time_min;
-    return std::abs(to - from) > chronology.period.at((from + to) / 2) / 2;
+    const double spacings = std::max(1.0, link.length_um / chronology.spacing_um);
+    return std::abs(to - from) > spacings * chronology.period.at((from + to) / 2) / 2;
   });
   return links;
 }

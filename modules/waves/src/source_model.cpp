@@ -15,10 +15,10 @@ namespace {
 constexpr double infinity = std::numeric_limits<double>::infinity();
 constexpr std::size_t most_sources = 8;
 constexpr std::size_t least_arrivals = 5;
-// Prior: each further source a third as likely; fronts from 30,000 µm/min (all at once, for any
+// Prior: each further source a quarter as likely; fronts from 30,000 µm/min (all at once, for any
 // film) down to 1; slowness along the tube within some ten per cent; jitter from a
 // second to a third of a period.
-const double log_another_source = std::log(0.33);
+const double log_another_source = std::log(0.25);
 const double least_log_slowness = std::log(1.0 / 30000);
 const double most_log_slowness = std::log(1.0);
 const double least_log_jitter = std::log(0.02);
@@ -574,6 +574,7 @@ SourceDraw drawn(const Model& model, const State& state) {
     draw.places_um.push_back(source.place);
     draw.starts_min.push_back(source.start);
   }
+  draw.depth_min = state.depth;
   draw.field_min = state.field;
   draw.source = state.label;
   draw.jitter_min = std::exp(state.log_jitter);

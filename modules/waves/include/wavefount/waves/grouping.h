@@ -7,7 +7,7 @@
 namespace wavefount {
 
 /// Neighbours among the chosen entries, by position in `members`; those more than half a period
-/// apart in time are none.
+/// apart in time for each spacing are none.
 std::vector<Link> wave_links(const std::vector<int>& members, const WaveEntries& entries,
                              const Tube& tube, const Chronology& chronology,
                              const NeighbourRules& rules);

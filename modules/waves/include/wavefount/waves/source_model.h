@@ -22,6 +22,7 @@ struct SourceDraw {
   std::vector<Point> places_um;
   std::vector<double> starts_min;
   std::vector<double> field_min;   ///< by arrival
+  std::vector<double> depth_min;   ///< by arrival: slowness summed up along the tube to its place
   std::vector<int> source;         ///< by arrival: the one whose front came first
   double slowness_min_per_um = 0;  ///< mean along the stretch where nuclei are
   double jitter_min = 0;
