@@ -9,6 +9,7 @@
 #include "wavefount/core/robust.h"
 #include "wavefount/waves/find_waves.h"
 #include "wavefount/waves/numbering.h"
+#include "wavefount/waves/order.h"
 #include "wavefount/waves/origins.h"
 #include "wavefount/waves/territories.h"
 
@@ -73,15 +74,19 @@ double arm_z(const Wave& wave, const TrueWave& truth) {
   return mean ? (mean->min_per_um - truth.slowness_min_per_um) / mean->se_min_per_um : 0;
 }
 
-void print_wave(const Scene& scene, const TrueWave& truth, const Wave& wave, const SourceFit& fit) {
+void print_wave(const Scene& scene, const TrueWave& truth, const Wave& wave,
+                const ArrivalFields& fields) {
+  const auto& fit = fields.fits[wave.number - 1];
   std::printf(
-      "  wave %d n %zu %s jitter %.2f speed %.1f (true %.1f, z %.1f; j %.2f z2 %.1f); true at",
+      "  wave %d n %zu %s jitter %.2f speed %.1f (true %.1f, z %.1f; order %.3f z2 %.1f); true at",
       wave.number, wave.entries.size(), name_of(wave.answer).c_str(), wave.jitter_min,
       wave.slowness ? 1 / wave.slowness->min_per_um : 0.0, 1 / truth.slowness_min_per_um,
       wave.slowness
           ? (wave.slowness->min_per_um - truth.slowness_min_per_um) / wave.slowness->se_min_per_um
           : 0.0,
-      fit.jitter_min, arm_z(wave, truth));
+      order_p_value(fields.arrivals[wave.number - 1], fit.astray, fields.links[wave.number - 1],
+                    999, 1),
+      arm_z(wave, truth));
   for (const auto& source : truth.sources_um) std::printf(" (%.0f %.0f)", source.x, source.y);
   std::printf("; spacing %.0f; found", scene.spacing_um);
   for (const auto& origin : wave.origins)
@@ -113,6 +118,7 @@ Measured measure(const Scene& scene, std::uint64_t seed) {
   measured.waves = std::move(found.waves);
   OriginRules origin_rules;
   origin_rules.frame_interval_min = 0.5;
+  origin_rules.film_start_min = scene.times_min.front();
   origin_rules.seed = seed;
   find_origins(
       measured.waves, entries,
@@ -139,13 +145,44 @@ void judge(const Scene& scene, const Measured& measured, Tally& tally) {
     }
     ++matched;
     if (std::getenv("WAVEFOUNT_WAVE_DETAIL") != nullptr)
-      print_wave(scene, truth, *wave, measured.fields.fits[wave->number - 1]);
+      print_wave(scene, truth, *wave, measured.fields);
     ++tally.answers[static_cast<std::size_t>(wave->answer)];
     judge_speed(truth, *wave, tally);
     judge_origins(scene, truth, *wave, tally);
   }
   tally.found += matched;
   tally.spurious += static_cast<int>(measured.waves.waves.size()) - matched;
+}
+
+void add(const Tally& tally, Tally& total) {
+  total.scenes += tally.scenes;
+  total.waves += tally.waves;
+  total.found += tally.found;
+  total.spurious += tally.spurious;
+  total.travelling += tally.travelling;
+  total.with_speed += tally.with_speed;
+  total.slowness_covered += tally.slowness_covered;
+  total.speed_errors.insert(total.speed_errors.end(), tally.speed_errors.begin(),
+                            tally.speed_errors.end());
+  total.sources += tally.sources;
+  total.right += tally.right;
+  total.missed += tally.missed;
+  total.invented += tally.invented;
+  total.claims_unfounded += tally.claims_unfounded;
+  for (std::size_t i = 0; i < total.answers.size(); ++i) total.answers[i] += tally.answers[i];
+  for (std::size_t i = 0; i < total.candidates.size(); ++i) {
+    total.candidates[i] += tally.candidates[i];
+    total.true_candidates[i] += tally.true_candidates[i];
+  }
+  total.seconds += tally.seconds;
+}
+
+void print_reliability(const Tally& tally) {
+  for (std::size_t i = 0; i < tally.candidates.size(); ++i)
+    if (tally.candidates[i] > 0)
+      std::printf("candidates with a probability of 0.%zu to 0.%zu: %d, true %.3f\n", i, i + 1,
+                  tally.candidates[i],
+                  static_cast<double>(tally.true_candidates[i]) / tally.candidates[i]);
 }
 
 void print(const std::string& name, const Tally& tally) {

@@ -22,9 +22,9 @@ Measured measure(const Scene& scene, std::uint64_t seed);
 /// Counts over many scenes.
 struct Tally {
   int scenes = 0, waves = 0, found = 0, spurious = 0;
-  int travelling = 0, with_speed = 0, covered = 0, slowness_covered = 0;
+  int travelling = 0, with_speed = 0, slowness_covered = 0;
   std::vector<double> speed_errors;  ///< relative
-  int sources = 0, right = 0, missed = 0, invented = 0, position_covered = 0;
+  int sources = 0, right = 0, missed = 0, invented = 0;
   int claims_unfounded = 0;  ///< claimed in waves without a source in view
   std::array<int, 7> answers{};
   std::array<int, 10> candidates{}, true_candidates{};  ///< by decile of the probability
@@ -32,6 +32,9 @@ struct Tally {
 };
 
 void judge(const Scene& scene, const Measured& outcome, Tally& tally);
+void add(const Tally& tally, Tally& total);
 void print(const std::string& name, const Tally& tally);
+/// Of the candidates with a probability in each tenth, how many were true.
+void print_reliability(const Tally& tally);
 
 }  // namespace wavefount::testing

@@ -166,10 +166,29 @@ class Matching {
       if (probability < least_probability) break;
       found.push_back(summary(members, probability));
     }
+    sort_by_probability(found);
     return found;
   }
 
  private:
+  void sort_by_probability(std::vector<Candidate>& found) {
+    std::vector<int> order(found.size());
+    std::iota(order.begin(), order.end(), 0);
+    std::stable_sort(order.begin(), order.end(),
+                     [&](int a, int b) { return found[a].probability > found[b].probability; });
+    std::vector<Candidate> sorted;
+    std::vector<int> position(found.size());
+    for (const int one : order) {
+      position[one] = static_cast<int>(sorted.size());
+      sorted.push_back(std::move(found[one]));
+    }
+    found = std::move(sorted);
+    for (auto& sample : samples_) {
+      const bool kept = sample.candidate >= 0 && sample.candidate < static_cast<int>(found.size());
+      sample.candidate = kept ? position[sample.candidate] : -1;
+    }
+  }
+
   /// The leader around whose usual minimum most unclaimed ones lie within a spacing.
   std::optional<Usual> densest() const {
     std::optional<Usual> best;
@@ -335,7 +354,7 @@ void add_probabilities(Candidates& result, const std::vector<Sample>& samples, i
 void add_basins(Candidates& result, const std::vector<Sample>& samples, std::size_t arrivals) {
   std::vector<std::vector<int>> counts(arrivals, std::vector<int>(result.found.size(), 0));
   for (const auto& sample : samples) {
-    if (sample.candidate < 0 || sample.candidate >= static_cast<int>(result.found.size())) continue;
+    if (sample.candidate < 0) continue;
     if (result.found[sample.candidate].probability < 0.5) continue;
     for (std::size_t i = 0; i < arrivals; ++i) counts[i][sample.candidate] += sample.basin[i];
   }

@@ -206,7 +206,9 @@ Chronology chronology_of(const std::vector<WaveEntry>& entries, const Nuclei& nu
                          const Interphases& interphases, const Tube& tube,
                          const Territories& territories, const NeighbourRules& rules) {
   Chronology chronology;
-  chronology.spacing_um = spacing_of(entries, territories);
+  // Nuclei are some ten µm wide; two at one place are one found twice.
+  constexpr double least_spacing_um = 1;
+  chronology.spacing_um = std::max(spacing_of(entries, territories), least_spacing_um);
   chronology.stations = stations_of(tracks_of(entries, nuclei), chronology.spacing_um);
   place_stations(chronology.stations, entries);
   std::vector<Point> places;

@@ -16,6 +16,11 @@ bool healthy(double time_min, const FilmOverrides& overrides) {
          !(overrides.last_healthy_min && time_min > *overrides.last_healthy_min);
 }
 
+bool usable(const Interphase& interphase) {
+  return std::isfinite(interphase.entry->time_min) && std::isfinite(interphase.place_um.x) &&
+         std::isfinite(interphase.place_um.y);
+}
+
 double usual_period(const Waves& waves, const Chronology& chronology) {
   std::vector<double> periods;
   for (const auto& wave : waves.waves)
@@ -64,9 +69,7 @@ WaveEntries entries_of(const Interphases& interphases, const Tube& tube,
   for (int i = 0; i < static_cast<int>(interphases.interphases.size()); ++i) {
     const auto& interphase = interphases.interphases[i];
     if (!interphase.entry || interphase.outcome != Outcome::entered) continue;
-    if (!std::isfinite(interphase.entry->time_min) ||
-        !healthy(interphase.entry->time_min, overrides))
-      continue;
+    if (!usable(interphase) || !healthy(interphase.entry->time_min, overrides)) continue;
     WaveEntry entry;
     entry.interphase = i;
     entry.nucleus = interphase.nucleus;

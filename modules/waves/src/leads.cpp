@@ -16,16 +16,31 @@ struct OrderShares {
   double first = 0, last = 0;
 };
 
+/// Some other is earlier, and some other later, beyond what any drawn error could turn.
+bool plainly_between(const WaveEntry& own, const std::vector<int>& others,
+                     const WaveEntries& entries) {
+  constexpr double beyond = 7;  // standard errors
+  bool after = false, before = false;
+  for (const int at : others) {
+    const auto& other = entries.entries[at];
+    const double margin = beyond * std::hypot(own.se_min, other.se_min);
+    after = after || other.time_min < own.time_min - margin;
+    before = before || other.time_min > own.time_min + margin;
+  }
+  return after && before;
+}
+
 /// How often an entry comes before, or after, all of some others when all times are drawn anew
 /// within their errors. Jitter is not drawn: it is the nuclei's own.
 OrderShares order_among(int entry, const std::vector<int>& others, const WaveEntries& entries,
                         const CounterRandom& random) {
+  OrderShares shares;
+  if (plainly_between(entries.entries[entry], others, entries)) return shares;
   const auto drawn = [&](int which, int draw) {
     const auto& one = entries.entries[which];
     return one.time_min + one.se_min * random.normal(static_cast<std::uint64_t>(which),
                                                      static_cast<std::uint64_t>(draw));
   };
-  OrderShares shares;
   for (int draw = 0; draw < draws; ++draw) {
     const double own = drawn(entry, draw);
     bool first = true, last = true;

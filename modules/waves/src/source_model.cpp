@@ -656,7 +656,8 @@ std::vector<SourceFit> fit_sources(const std::vector<Arrivals>& waves, const Sou
     if (waves[i].times_min.size() < least_arrivals) continue;
     jitters.push_back(sampled(waves[i], region, quick, {}, 2 * i, 3000, 30).jitter_min);
   }
-  const double common = median(jitters);
+  // A wave whose sources are not resolved takes them for jitter: the tighter ones know better.
+  const double common = quantile(jitters, 0.25);
   std::vector<SourceFit> fits(waves.size());
   for (std::size_t i = 0; i < waves.size(); ++i) {
     if (waves[i].times_min.size() >= least_arrivals)
