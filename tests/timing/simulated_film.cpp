@@ -91,10 +91,12 @@ void add_nucleus(const Scene& scene, Film& film, std::mt19937_64& random) {
     point.cytoplasm = 300;
     nucleus.points.push_back(point);
   }
-  for (const auto& cycle : cycles)
+  for (const auto& cycle : cycles) {
+    film.all_entries.push_back({nucleus.id, cycle.entry});
     if (cycle.entry > times.front() + 6 * scene.interval_min &&
         cycle.entry < times.back() - 4 * scene.interval_min)
       film.entries.push_back({nucleus.id, cycle.entry});
+  }
   film.nuclei.nuclei.push_back(std::move(nucleus));
   film.traces.traces.push_back(std::move(trace));
 }

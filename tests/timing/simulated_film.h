@@ -42,7 +42,8 @@ struct Film {
   FilmDescription description;
   Nuclei nuclei;
   ApertureTraces traces;
-  std::vector<TrueEntry> entries;  ///< those with three frames after and seen before
+  std::vector<TrueEntry> all_entries;
+  std::vector<TrueEntry> entries;  ///< those with enough frames before and after
 };
 
 Film simulate(const Scene& scene, std::uint64_t seed);

@@ -72,8 +72,8 @@ Weighted disc_mean(const cv::Mat1f& frame, const cv::Mat1b& tubes, const Disc& d
 
 LocalLevel ring_mean(const cv::Mat1f& frame, const cv::Mat1b& tubes, const Disc& disc,
                      const std::vector<Disc>& others) {
-  const double inner = std::max(ring_from * disc.radius, disc.radius + ring_gap_px);
-  const double step = std::max((ring_to - ring_from) * disc.radius, ring_width_px);
+  const auto [inner, first_outer] = ring_around(disc.radius);
+  const double step = first_outer - inner;
   std::vector<float> values;
   for (double outer = inner + step; outer < inner + 3.5 * step; outer += step) {
     values.clear();
@@ -96,6 +96,13 @@ LocalLevel ring_mean(const cv::Mat1f& frame, const cv::Mat1b& tubes, const Disc&
 }
 
 }  // namespace
+
+Ring ring_around(double radius_px) {
+  Ring ring;
+  ring.inner_px = std::max(ring_from * radius_px, radius_px + ring_gap_px);
+  ring.outer_px = ring.inner_px + std::max((ring_to - ring_from) * radius_px, ring_width_px);
+  return ring;
+}
 
 ApertureReading read_aperture(const cv::Mat1f& frame, const cv::Mat1b& tubes, const Disc& disc,
                               const std::vector<Disc>& others, const CameraModel& camera,

@@ -26,6 +26,10 @@ class SecondTouch {
       tracks_.emplace_back(nucleus);
       ApertureTrace trace;
       trace.radius_um = std::max(tracks_.back().aperture_radius_um(), least_radius_um());
+      const double reduced_um = grid_.factor * input_.film.pixel_um;
+      const Ring ring = ring_around(trace.radius_um / reduced_um);
+      trace.ring_from_um = ring.inner_px * reduced_um;
+      trace.ring_to_um = ring.outer_px * reduced_um;
       traces_.traces.push_back(std::move(trace));
       missing_.emplace_back();
     }

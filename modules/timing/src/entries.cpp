@@ -139,9 +139,21 @@ void lose_slow(std::vector<Pending>& pending, Interphases& result) {
   });
 }
 
-Surroundings surroundings_of(const FilmDescription& film, const Tube* tube) {
+Surroundings surroundings_of(const FilmDescription& film, const ApertureTraces& traces,
+                             const Tube* tube) {
   const bool walls = tube && tube->measured && !tube->wide;
-  return {film.optics, walls ? tube->width_um : 0.0};
+  Surroundings where{film.optics, walls ? tube->width_um : 0.0};
+  std::vector<double> from;
+  std::vector<double> to;
+  for (const auto& trace : traces.traces) {
+    if (!(trace.ring_to_um > 0)) continue;
+    from.push_back(trace.ring_from_um / trace.radius_um);
+    to.push_back(trace.ring_to_um / trace.radius_um);
+  }
+  // Rings scale with their apertures, but for the smallest ones.
+  where.ring_from = median(std::move(from));
+  where.ring_to = median(std::move(to));
+  return where;
 }
 
 }  // namespace
@@ -158,7 +170,8 @@ Interphases time_entries(const FilmDescription& film, const Nuclei& nuclei,
   lose_slow(pending, result);
   std::vector<FallWindow> windows;
   for (const auto& one : pending) windows.push_back(one.window);
-  const auto onsets = time_falls(windows, surroundings_of(film, tube), settings.shape_falls);
+  const auto onsets =
+      time_falls(windows, surroundings_of(film, traces, tube), settings.shape_falls);
   for (std::size_t i = 0; i < onsets.size(); ++i) {
     auto& own = result.interphases[pending[i].interphase];
     const auto& onset = onsets[i];

@@ -23,7 +23,7 @@ constexpr double drift_prior = 0.1;
 // Likelihoods this far below the best no longer matter.
 constexpr double negligible_misfit = 20;
 constexpr int coarse_points = 32;
-constexpr int fine_points = 56;
+constexpr int fine_points = 30;
 // A likelihood resolved by fewer points than this is looked at again, closer.
 constexpr int enough_points = 14;
 constexpr int zooms = 6;
@@ -71,8 +71,7 @@ struct Solved {
   double misfit = 0;
 };
 
-Solved solve(const FallWindow& window, const ReleaseCurve& curve, double onset) {
-  const Row prior = prior_precision(window);
+Solved solve(const FallWindow& window, const ReleaseCurve& curve, double onset, const Row& prior) {
   Solved solved;
   solved.data.setZero();
   Row right = Row::Zero();
@@ -80,10 +79,16 @@ Solved solve(const FallWindow& window, const ReleaseCurve& curve, double onset) 
   for (const auto& sample : window.samples) {
     const Row row = columns_at(sample.time_min - onset, window.exposure_min, curve);
     const double weight = 1 / sample.variance;
-    solved.data.noalias() += weight * row * row.transpose();
-    right += (weight * sample.signal) * row;
+    const Row weighted = weight * row;
+    // Most columns are zero on either side of the onset; the lower half is enough.
+    for (int j = 0; j < columns; ++j) {
+      if (weighted[j] == 0) continue;
+      for (int i = j; i < columns; ++i) solved.data(i, j) += row[i] * weighted[j];
+    }
+    right += sample.signal * weighted;
     squares += weight * sample.signal * sample.signal;
   }
+  solved.data.triangularView<Eigen::StrictlyUpper>() = solved.data.transpose();
   right[base_column] += prior[base_column] * window.base;
   squares += prior[base_column] * window.base * window.base;
   Normal normal = solved.data;
@@ -113,7 +118,7 @@ std::pair<std::size_t, std::size_t> support(const OnsetLikelihood& likelihood) {
 }  // namespace
 
 OnsetFit fit_onset(const FallWindow& window, const ReleaseCurve& curve, double onset_min) {
-  const auto solved = solve(window, curve, onset_min);
+  const auto solved = solve(window, curve, onset_min, prior_precision(window));
   OnsetFit fit;
   fit.misfit = solved.misfit;
   fit.level = solved.solution[level_column];
@@ -125,7 +130,7 @@ OnsetFit fit_onset(const FallWindow& window, const ReleaseCurve& curve, double o
 
 std::vector<double> onset_residuals(const FallWindow& window, const ReleaseCurve& curve,
                                     double onset_min) {
-  const auto solved = solve(window, curve, onset_min);
+  const auto solved = solve(window, curve, onset_min, prior_precision(window));
   std::vector<double> residuals;
   for (const auto& sample : window.samples) {
     const Row row = columns_at(sample.time_min - onset_min, window.exposure_min, curve);
@@ -139,8 +144,9 @@ OnsetLikelihood onset_likelihood(const FallWindow& window, const ReleaseCurve& c
   OnsetLikelihood likelihood;
   likelihood.onset_min = grid_min;
   likelihood.least_misfit = INFINITY;
+  const Row prior = prior_precision(window);
   for (const double onset : grid_min) {
-    const auto solved = solve(window, curve, onset);
+    const auto solved = solve(window, curve, onset, prior);
     const double log_det = 2 * solved.factor.matrixLLT().diagonal().array().log().sum();
     likelihood.log_likelihood.push_back(-0.5 * (solved.misfit + log_det));
     if (solved.misfit < likelihood.least_misfit) {

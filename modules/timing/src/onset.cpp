@@ -141,8 +141,7 @@ std::vector<Onset> time_falls(std::vector<FallWindow> windows, const Surrounding
                               int shape_falls) {
   if (windows.empty()) return {};
   scale_by_differences(windows);
-  const auto first = pool_shape(windows, surroundings, shape_falls);
-  scale_by_residuals(windows, first.shapes.front().shape, surroundings);
+  scale_by_residuals(windows, scout_shape(windows, surroundings), surroundings);
   const auto pooled = pool_shape(windows, surroundings, shape_falls);
   std::vector<Onset> onsets;
   for (const auto& window : windows) onsets.push_back(time_fall(window, pooled, surroundings));

@@ -52,7 +52,7 @@ class TimeEntries : public AcquisitionStep {
          "1",
          1.0,
          10000.0,
-         "40",
+         "32",
          {},
          "Most falls of a film that the shape of the release is learned from; more gain little and "
          "take time."},

@@ -1,10 +1,10 @@
 #include "wavefount/timing/pooled_shape.h"
 
 #include <algorithm>
-#include <array>
 #include <cmath>
+#include <deque>
 #include <map>
-#include <numeric>
+#include <set>
 
 namespace wavefount {
 
@@ -21,11 +21,16 @@ constexpr int permeabilisation_steps = 88;           // to 3.4 min
 constexpr int coarse_step = 16;
 // One fall cannot say more against a shape than this much in log likelihood.
 constexpr double highest_say = 12;
-// A lattice step that changes the log evidence by this much or less is small enough to average
-// over.
-constexpr double small_change = 1;
-constexpr double least_weight = 0.005;
-constexpr std::size_t most_shapes = 16;
+// Pores that open at random empty a nucleus exponentially; a constant flow is the exception and has
+// to show itself in the film (log of the prior odds).
+constexpr double linear_prior = -3;
+// Shapes this far below the best in log posterior no longer matter.
+constexpr double negligible = 6;
+// A posterior that spreads over this many nodes is resolved.
+constexpr double enough_nodes = 8;
+constexpr int most_shapes = 16;
+// Enough falls to find the region of the shape.
+constexpr int scout_falls = 12;
 
 struct Node {
   int kind = 0, diffusion = 0, permeabilisation = 0;
@@ -46,123 +51,124 @@ bool on_lattice(const Node& node) {
          node.permeabilisation <= permeabilisation_steps;
 }
 
+// The log evidence of shapes in a set of windows.
 class Search {
  public:
   Search(std::vector<const FallWindow*> windows, const Surroundings& surroundings)
-      : windows_(std::move(windows)), surroundings_(surroundings) {}
+      : windows_(std::move(windows)),
+        surroundings_(surroundings),
+        best_(windows_.size(), -INFINITY) {}
 
-  PooledShape run() {
-    std::vector<Node> coarse;
+  // The best node of a coarse lattice over the whole range.
+  Node scout() {
+    std::vector<Node> nodes;
     for (int kind = 0; kind < 2; ++kind)
       for (int d = 0; d <= diffusion_steps; d += coarse_step)
         for (int p = 0; p <= permeabilisation_steps; p += coarse_step)
-          coarse.push_back({kind, d, p});
-    best_.assign(windows_.size(), -INFINITY);
-    for (const auto& node : coarse) {
-      const auto& own = evidence(node);
-      for (std::size_t i = 0; i < own.size(); ++i) best_[i] = std::max(best_[i], own[i]);
+          nodes.push_back({kind, d, p});
+    for (const auto& node : nodes) evaluate(node);
+    return best_of(nodes);
+  }
+
+  // The posterior on the coarsest lattice that resolves it.
+  std::map<Node, double> posterior(Node start) {
+    std::map<Node, double> weights;
+    for (int step = coarse_step; step >= 1; step /= 2) {
+      std::set<Node> nodes;
+      for (int kind = 0; kind < 2; ++kind)
+        flood({kind, start.diffusion, start.permeabilisation}, step, nodes);
+      start = best_of({nodes.begin(), nodes.end()});
+      weights = normalised({nodes.begin(), nodes.end()});
+      if (effective_number(weights) >= enough_nodes) break;
     }
-    std::map<Node, double> posterior;
-    for (int kind = 0; kind < 2; ++kind) spread_around(climb(best_of(coarse, kind)), posterior);
-    return normalised(posterior);
+    return weights;
   }
 
  private:
-  const std::vector<double>& evidence(const Node& node) {
-    const auto known = cache_.find(node);
-    if (known != cache_.end()) return known->second;
-    std::vector<double> values;
-    for (const auto* window : windows_)
-      values.push_back(onset_likelihood(*window, curve_for(*window, shape_of(node), surroundings_))
-                           .log_evidence());
-    return cache_[node] = std::move(values);
+  void evaluate(const Node& node) {
+    if (!on_lattice(node) || cache_.contains(node)) return;
+    auto& values = cache_[node];
+    for (std::size_t i = 0; i < windows_.size(); ++i) {
+      const auto curve = curve_for(*windows_[i], shape_of(node), surroundings_);
+      values.push_back(onset_likelihood(*windows_[i], curve).log_evidence());
+      best_[i] = std::max(best_[i], values.back());
+    }
   }
 
   double score(const Node& node) {
     if (!on_lattice(node)) return -INFINITY;
-    const auto& own = evidence(node);
-    double sum = 0;
+    evaluate(node);
+    const auto& own = cache_.at(node);
+    double sum = node.kind == 1 ? linear_prior : 0;
     for (std::size_t i = 0; i < own.size(); ++i) sum += std::max(own[i] - best_[i], -highest_say);
     return sum;
   }
 
-  Node best_of(const std::vector<Node>& nodes, int kind) {
-    Node best;
-    double highest = -INFINITY;
-    for (const auto& node : nodes)
-      if (node.kind == kind && score(node) > highest) {
-        highest = score(node);
-        best = node;
-      }
-    return best;
+  Node best_of(const std::vector<Node>& nodes) {
+    return *std::max_element(nodes.begin(), nodes.end(),
+                             [this](const Node& a, const Node& b) { return score(a) < score(b); });
   }
 
-  // Pattern search (Hooke & Jeeves 1961) with the diagonals, along which the two trade off.
-  Node climb(Node node) {
-    constexpr std::array<std::array<int, 2>, 8> moves{
-        {{1, 0}, {-1, 0}, {0, 1}, {0, -1}, {1, 1}, {-1, -1}, {1, -1}, {-1, 1}}};
-    for (int step = coarse_step / 2; step >= 1; step /= 2)
-      for (bool moved = true; moved;) {
-        moved = false;
-        Node better = node;
-        for (const auto& move : moves) {
-          const Node trial{node.kind, node.diffusion + move[0] * step,
-                           node.permeabilisation + move[1] * step};
-          if (score(trial) > score(better)) better = trial;
+  // All nodes of the lattice of that step that hang together with the start and still matter; on
+  // the way it climbs, since what matters is measured against the best so far.
+  void flood(const Node& start, int step, std::set<Node>& seen) {
+    std::deque<Node> open{start};
+    seen.insert(start);
+    double highest = score(start);
+    while (!open.empty()) {
+      const Node node = open.front();
+      open.pop_front();
+      highest = std::max(highest, score(node));
+      if (score(node) < highest - negligible) continue;
+      for (int d = -1; d <= 1; ++d)
+        for (int p = -1; p <= 1; ++p) {
+          const Node near{node.kind, node.diffusion + d * step, node.permeabilisation + p * step};
+          if (on_lattice(near) && seen.insert(near).second) open.push_back(near);
         }
-        if (better != node) {
-          node = better;
-          moved = true;
-        }
-      }
-    return node;
-  }
-
-  // The step along one axis over which the evidence changes little.
-  int step_along(const Node& node, int diffusion, int permeabilisation) {
-    int step = 1;
-    for (; step < coarse_step; step *= 2) {
-      double change = INFINITY;
-      for (const int side : {-2 * step, 2 * step}) {
-        const double there = score({node.kind, node.diffusion + diffusion * side,
-                                    node.permeabilisation + permeabilisation * side});
-        if (std::isfinite(there)) change = std::min(change, score(node) - there);
-      }
-      if (change > small_change) break;
     }
-    return step;
   }
 
-  void spread_around(const Node& node, std::map<Node, double>& posterior) {
-    const int along = step_along(node, 1, 0), across = step_along(node, 0, 1);
-    for (int d = -2; d <= 2; ++d)
-      for (int p = -2; p <= 2; ++p) {
-        const Node near{node.kind, node.diffusion + d * along, node.permeabilisation + p * across};
-        if (on_lattice(near)) posterior[near] = score(near) + std::log(along * across);
-      }
-  }
-
-  static PooledShape normalised(const std::map<Node, double>& posterior) {
-    double highest = -INFINITY;
-    for (const auto& [node, value] : posterior) highest = std::max(highest, value);
-    PooledShape pooled;
-    for (const auto& [node, value] : posterior)
-      if (std::exp(value - highest) >= least_weight)
-        pooled.shapes.push_back({shape_of(node), std::exp(value - highest)});
-    std::stable_sort(pooled.shapes.begin(), pooled.shapes.end(),
-                     [](const auto& a, const auto& b) { return a.weight > b.weight; });
-    if (pooled.shapes.size() > most_shapes) pooled.shapes.resize(most_shapes);
+  std::map<Node, double> normalised(const std::vector<Node>& nodes) {
+    const double highest = score(best_of(nodes));
+    std::map<Node, double> weights;
     double sum = 0;
-    for (const auto& one : pooled.shapes) sum += one.weight;
-    for (auto& one : pooled.shapes) one.weight /= sum;
-    return pooled;
+    for (const auto& node : nodes) {
+      const double below = score(node) - highest;
+      if (below < -negligible) continue;
+      sum += weights[node] = std::exp(below);
+    }
+    for (auto& [node, weight] : weights) weight /= sum;
+    return weights;
+  }
+
+  static double effective_number(const std::map<Node, double>& weights) {
+    double squares = 0;
+    for (const auto& [node, weight] : weights) squares += weight * weight;
+    return 1 / squares;
   }
 
   std::vector<const FallWindow*> windows_;
   Surroundings surroundings_;
   std::map<Node, std::vector<double>> cache_;
-  std::vector<double> best_;
+  std::vector<double> best_;  // of each window over the shapes tried
 };
+
+// At most most_shapes of the nodes by systematic sampling, which keeps the spread of the posterior.
+PooledShape thinned(const std::map<Node, double>& weights) {
+  std::map<Node, double> kept;
+  double cumulated = 0;
+  int next = 0;
+  for (const auto& [node, weight] : weights) {
+    cumulated += weight;
+    for (; next < most_shapes && (next + 0.5) / most_shapes <= cumulated; ++next)
+      kept[node] += 1.0 / most_shapes;
+  }
+  PooledShape pooled;
+  for (const auto& [node, weight] : kept) pooled.shapes.push_back({shape_of(node), weight});
+  std::stable_sort(pooled.shapes.begin(), pooled.shapes.end(),
+                   [](const auto& a, const auto& b) { return a.weight > b.weight; });
+  return pooled;
+}
 
 double signal_to_noise(const FallWindow& window) {
   double variance = 0;
@@ -183,11 +189,16 @@ std::vector<const FallWindow*> clearest(const std::vector<FallWindow>& windows, 
 
 }  // namespace
 
+ReleaseShape scout_shape(const std::vector<FallWindow>& windows, const Surroundings& surroundings) {
+  return shape_of(Search(clearest(windows, scout_falls), surroundings).scout());
+}
+
 PooledShape pool_shape(const std::vector<FallWindow>& windows, const Surroundings& surroundings,
                        int most_falls) {
   if (windows.empty())
     return {{{shape_of({0, diffusion_steps / 2, permeabilisation_steps / 2}), 1.0}}};
-  return Search(clearest(windows, most_falls), surroundings).run();
+  const Node start = Search(clearest(windows, scout_falls), surroundings).scout();
+  return thinned(Search(clearest(windows, most_falls), surroundings).posterior(start));
 }
 
 }  // namespace wavefount

@@ -3,7 +3,12 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <functional>
+#include <map>
+#include <memory>
+#include <mutex>
 #include <numbers>
+#include <tuple>
 
 namespace wavefount {
 
@@ -15,7 +20,7 @@ constexpr double pi = std::numbers::pi;
 // times.
 class ShareTable {
  public:
-  explicit ShareTable(double (*share)(double)) {
+  explicit ShareTable(const std::function<double(double)>& share) {
     for (int i = 0; i < count; ++i) values_[i] = share(std::exp(lowest + i * step));
   }
 
@@ -25,7 +30,9 @@ class ShareTable {
     // Below the table the loss goes with √τ; above it with the tail's own power.
     if (place <= 0) return 1 - (1 - values_[0]) * std::sqrt(tau / std::exp(lowest));
     if (place >= count - 1) {
-      const double power = std::log(values_[count - 1] / values_[count - 2]) / step;
+      const double ratio = values_[count - 1] / values_[count - 2];
+      if (!(ratio > 0 && ratio < 1)) return 0;
+      const double power = std::log(ratio) / step;
       return values_[count - 1] * std::exp(power * (place - (count - 1)) * step);
     }
     const int below = static_cast<int>(place);
@@ -51,11 +58,65 @@ double sphere_concentration(double rho, double tau) {
   return edges - std::sqrt(tau / pi) / rho * (std::exp(-in * in) - std::exp(-out * out));
 }
 
-const ShareTable& table_for(Optics optics) {
-  static const ShareTable disc(disc_share);
-  if (optics == Optics::widefield) return disc;
-  static const ShareTable sphere(sphere_share);
-  return sphere;
+/// Bessel functions of the ring's Hankel integral over k, which do not depend on τ.
+class RingIntegral {
+ public:
+  RingIntegral(double from, double to) {
+    for (int i = 1; i <= count; ++i) {
+      const double k = step * i;
+      const double ring = to * std::cyl_bessel_j(1, k * to) - from * std::cyl_bessel_j(1, k * from);
+      kernel_[i - 1] = 2 / (to * to - from * from) * std::cyl_bessel_j(1, k) * ring / k;
+    }
+  }
+
+  double at(double tau) const {
+    double sum = 0;
+    for (int i = 1; i <= count; ++i) {
+      const double exponent = step * i * (step * i) * tau;
+      if (exponent > 40) break;
+      sum += kernel_[i - 1] * std::exp(-exponent);
+    }
+    return sum * step;
+  }
+
+ private:
+  // The kernel turns over with period 2π/(1 + to); beyond k = 80 nothing is left at τ = 0.006.
+  static constexpr double step = 0.02;
+  static constexpr int count = 4000;
+
+  std::array<double, count> kernel_{};
+};
+
+/// Before this τ nothing has reached the ring; after the later one two terms of the series in 1/τ
+/// do.
+constexpr double ring_before = 0.006;
+constexpr double ring_after = 30;
+
+std::function<double(double)> share_of(const Surroundings& where) {
+  const double from = where.ring_from;
+  const double to = where.ring_to;
+  const bool ring = to > from && from > 0;
+  if (where.optics == Optics::sectioned) {
+    if (!ring) return sphere_share;
+    return [=](double tau) { return sphere_share(tau) - sphere_ring_share(tau, from, to); };
+  }
+  if (!ring) return disc_share;
+  const auto integral = std::make_shared<RingIntegral>(from, to);
+  return [=](double tau) {
+    if (tau < ring_before) return disc_share(tau);
+    if (tau > ring_after) return ((from * from + to * to) / 2 - 0.5) / (16 * tau * tau);
+    return disc_share(tau) - integral->at(tau);
+  };
+}
+
+/// Tables are made once for each kind of surroundings; films are few kinds.
+const ShareTable& table_for(const Surroundings& where) {
+  static std::mutex mutex;
+  static std::map<std::tuple<Optics, double, double>, std::unique_ptr<ShareTable>> tables;
+  const std::lock_guard guard(mutex);
+  auto& table = tables[{where.optics, where.ring_from, where.ring_to}];
+  if (!table) table = std::make_unique<ShareTable>(share_of(where));
+  return *table;
 }
 
 // What walls throw back: images of the source, one tube width apart, each seen as a point source.
@@ -98,14 +159,32 @@ double sphere_share(double tau) {
   return sum / (3.0 * intervals);
 }
 
+double disc_ring_share(double tau, double from, double to) {
+  return tau < ring_before ? 0 : RingIntegral(from, to).at(tau);
+}
+
+double sphere_ring_share(double tau, double from, double to) {
+  if (tau < ring_before) return 0;
+  // Simpson over the area of the ring, s = ρ².
+  constexpr int intervals = 200;
+  double sum = 0;
+  for (int i = 0; i <= intervals; ++i) {
+    const double s = from * from + (to * to - from * from) * i / intervals;
+    const double weight = i == 0 || i == intervals ? 1 : (i % 2 == 1 ? 4 : 2);
+    sum += weight * sphere_concentration(std::sqrt(s), tau);
+  }
+  return sum / (3.0 * intervals);
+}
+
 ReleaseCurve::ReleaseCurve(const ReleaseShape& shape, const Surroundings& surroundings,
                            double radius_um, double length_min, double step_min)
     : step_min_(step_min) {
   const auto count = static_cast<std::size_t>(std::ceil(length_min / step_min)) + 2;
-  const auto& table = table_for(surroundings.optics);
+  const auto& table = table_for(surroundings);
   const double per_min = shape.diffusion_um2_per_min / (radius_um * radius_um);
   const double widths = surroundings.tube_width_um / radius_um;
-  const bool walls = surroundings.tube_width_um > 0 && surroundings.optics == Optics::widefield;
+  const bool walls = surroundings.tube_width_um > 0 && surroundings.optics == Optics::widefield &&
+                     surroundings.ring_to <= 0;
   std::vector<double> spread(count, 1.0);
   for (std::size_t i = 1; i < count; ++i) {
     const double tau = per_min * step_min * static_cast<double>(i);

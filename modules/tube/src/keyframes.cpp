@@ -7,7 +7,7 @@
 #include <opencv2/imgproc.hpp>
 #include <utility>
 
-#include "wavefount/core/robust.h"
+#include "row_sort.h"
 #include "wavefount/tube/shift.h"
 
 namespace wavefount::tube {
@@ -39,14 +39,50 @@ cv::Mat moved_back(const Image& image, double x, double y) {
   return moved;
 }
 
-/// Quantile of a few sorted values.
-float sorted_quantile(const std::vector<float>& sorted, double share) {
-  const double at = share * static_cast<double>(sorted.size() - 1);
-  const auto below = static_cast<std::size_t>(at);
-  const auto above = std::min(below + 1, sorted.size() - 1);
-  const auto part = static_cast<float>(at - static_cast<double>(below));
-  return sorted[below] + part * (sorted[above] - sorted[below]);
-}
+/// The same row of all images, and the same freed of each image's own gain and offset; what is not
+/// seen is +infinity. Sorted by column.
+class SortedRow {
+ public:
+  SortedRow(const std::vector<cv::Mat>& images, const AlignedImages& aligned, int y)
+      : values_(images.size()), levelled_(images.size()), seen_(images[0].cols, 0) {
+    for (std::size_t k = 0; k < images.size(); ++k) take(images[k].ptr<float>(y), aligned, k);
+    sort_columns(values_);
+    sort_columns(levelled_);
+  }
+
+  float value(int x, double share) const { return quantile_of(values_, x, share); }
+  float levelled(int x, double share) const { return quantile_of(levelled_, x, share); }
+
+ private:
+  void take(const float* row, const AlignedImages& aligned, std::size_t k) {
+    const std::size_t width = seen_.size();
+    values_[k].resize(width);
+    levelled_[k].resize(width);
+    const auto offset = static_cast<float>(aligned.offset[k]);
+    const auto scale = static_cast<float>(1 / aligned.gain[k]);
+    constexpr float none = std::numeric_limits<float>::infinity();
+    for (std::size_t x = 0; x < width; ++x) {
+      const bool finite = std::isfinite(row[x]);
+      values_[k][x] = finite ? row[x] : none;
+      levelled_[k][x] = finite ? (row[x] - offset) * scale : none;
+      seen_[x] += finite ? 1 : 0;
+    }
+  }
+
+  float quantile_of(const std::vector<std::vector<float>>& sorted, int x, double share) const {
+    const auto column = static_cast<std::size_t>(x);
+    const int last = std::max(seen_[column] - 1, 0);
+    const double at = share * last;
+    const int below = static_cast<int>(at);
+    const int above = std::min(below + 1, last);
+    const float low = sorted[static_cast<std::size_t>(below)][column];
+    const float high = sorted[static_cast<std::size_t>(above)][column];
+    return above == below ? low : low + static_cast<float>(at - below) * (high - low);
+  }
+
+  std::vector<std::vector<float>> values_, levelled_;
+  std::vector<int> seen_;  ///< images in which each column is seen
+};
 
 void combine(const std::vector<ImagePointer>& images, AlignedImages& aligned) {
   std::vector<cv::Mat> moved;
@@ -57,27 +93,16 @@ void combine(const std::vector<ImagePointer>& images, AlignedImages& aligned) {
   aligned.median = make_image(width, height);
   aligned.low = make_image(width, height);
   aligned.spread = make_image(width, height);
-  std::vector<float> values;
-  std::vector<float> levelled;
   for (int y = 0; y < height; ++y) {
+    const SortedRow row(moved, aligned, y);
     for (int x = 0; x < width; ++x) {
-      values.clear();
-      levelled.clear();
-      for (std::size_t k = 0; k < moved.size(); ++k) {
-        const float value = moved[k].at<float>(y, x);
-        if (!std::isfinite(value)) continue;
-        values.push_back(value);
-        levelled.push_back(static_cast<float>((value - aligned.offset[k]) / aligned.gain[k]));
-      }
-      std::sort(values.begin(), values.end());
-      std::sort(levelled.begin(), levelled.end());
       const auto at = static_cast<std::ptrdiff_t>(y) * width + x;
-      aligned.median->GetBufferPointer()[at] = sorted_quantile(values, 0.5);
-      aligned.low->GetBufferPointer()[at] = sorted_quantile(values, 0.2);
+      aligned.median->GetBufferPointer()[at] = row.value(x, 0.5);
+      aligned.low->GetBufferPointer()[at] = row.value(x, 0.2);
       // The range from 10 to 90 % is 2.563 standard deviations of normal data; a nucleus absent a
       // tenth of the time counts as varying.
       aligned.spread->GetBufferPointer()[at] =
-          (sorted_quantile(levelled, 0.9) - sorted_quantile(levelled, 0.1)) / 2.563F;
+          (row.levelled(x, 0.9) - row.levelled(x, 0.1)) / 2.563F;
     }
   }
 }

@@ -28,6 +28,8 @@ struct TracePoint {
 /// The fixed-aperture signal at a nucleus' place, through formation and loss.
 struct ApertureTrace {
   double radius_um = 0;
+  double ring_from_um = 0;  ///< the surrounding is measured in a ring: released light reaches it
+  double ring_to_um = 0;    ///< 0: none was taken off
   std::vector<int> frame;
   std::vector<double> time_min;
   std::vector<double> signal;    ///< mean over the aperture above the surrounding, counts

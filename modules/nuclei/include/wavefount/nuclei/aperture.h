@@ -19,6 +19,12 @@ struct ApertureReading {
   double surroundings = 0;  ///< counts, dark offset included
 };
 
+/// Where the surroundings of a disc are measured, reduced pixels.
+struct Ring {
+  double inner_px = 0, outer_px = 0;
+};
+Ring ring_around(double radius_px);
+
 /// Reads a fixed disc, its rim pixels by the share that it covers, against the clipped mean of a
 /// ring farther out (1.5 to 2.5 radii). Pixels nearer to one of `others` for its size are left out
 /// of the disc, those within 1.3 of their radii out of the ring, those outside of the tube (0 in

@@ -15,7 +15,7 @@ struct EntrySettings {
   double longest_fall_min = 4;   ///< from near the top to clearly down; slower is fading
   double window_before_min = 0;  ///< 0: from the frame interval
   double window_after_min = 0;   ///< 0: from the frame interval
-  int shape_falls = 40;          ///< most falls that the release's shape is learned from
+  int shape_falls = 80;          ///< most falls that the release's shape is learned from
   Stamp stamp = Stamp::start;
 };
 

@@ -23,4 +23,7 @@ struct PooledShape {
 PooledShape pool_shape(const std::vector<FallWindow>& windows, const Surroundings& surroundings,
                        int most_falls);
 
+/// The best of a coarse lattice of shapes by a dozen of the clearest falls; `windows` not empty.
+ReleaseShape scout_shape(const std::vector<FallWindow>& windows, const Surroundings& surroundings);
+
 }  // namespace wavefount

@@ -13,10 +13,17 @@ double disc_share(double tau);
 /// eq. 3.8, averaged over the section). Tail τ^(−3/2).
 double sphere_share(double tau);
 
-/// Where the content spreads.
+/// Mean over a ring around the disc (radii in units of the disc's) of what the disc held, 1 at τ =
+/// 0 inside it: the Hankel integral of the disc's diffusion (Crank 1975, §3.5.2). Tail 1/4τ.
+double disc_ring_share(double tau, double from, double to);
+/// The same in an optical section through a sphere. Tail τ^(−3/2).
+double sphere_ring_share(double tau, double from, double to);
+
+/// Where the content spreads, and what is taken off the aperture.
 struct Surroundings {
   Optics optics = Optics::widefield;
-  double tube_width_um = 0;  ///< 0: no walls
+  double tube_width_um = 0;           ///< 0: no walls
+  double ring_from = 0, ring_to = 0;  ///< of the ring taken off, in aperture radii; 0: none
 };
 
 /// How the envelope gives way, with one time for either.
@@ -29,8 +36,10 @@ struct ReleaseShape {
   Permeabilisation kind = Permeabilisation::exponential;
 };
 
-/// Share of the light still in the aperture, against time since the onset: diffusion from a disc
-/// whose content is let go over the permeabilisation time. Tabulated over [0, length_min].
+/// Share of the signal that is left, against time since the onset: diffusion from a disc whose
+/// content is let go over the permeabilisation time, less what of it has reached the ring. What
+/// walls throw back reaches aperture and ring alike, so walls count only where no ring is taken
+/// off. Tabulated over [0, length_min].
 class ReleaseCurve {
  public:
   /// `radius_um` of the aperture; `step_min` of the table.
