@@ -164,7 +164,7 @@ Border find_border(const Straightened& given, const BorderSearch& search) {
   for (std::size_t i = 0; i < count; ++i)
     if (had[i] > 0) rests.push_back(raw[i] - border.position[i]);
   border.roughness = robust_sd(rests);
-  if (found < 8) return border;
+  if (found < 8 || !search.by_section) return border;
   const double offset = edge_offset(stacked(profiles, search, levels, border));
   for (auto& one : border.position) one += offset;
   return border;

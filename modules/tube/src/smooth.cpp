@@ -86,21 +86,23 @@ std::vector<double> smooth(const std::vector<double>& values, const std::vector<
 std::vector<double> smooth_robust(const std::vector<double>& values, std::vector<double>& weights,
                                   double cutoff) {
   const auto given = weights;
-  // The first rounds are stiff, so that a stretch of debris does not pull the curve to itself.
+  // The first rounds are stiffer, so that a stretch of debris does not pull the curve to itself,
+  // and wider in what they accept, so that a bend is not taken for debris.
   constexpr int rounds = 10;
-  constexpr double smallest_scale = 0.05;
-  auto curve = smooth(values, weights, 4 * cutoff);
+  constexpr double smallest_scale = 0.25;
+  auto curve = smooth(values, weights, 2 * cutoff);
   for (int round = 0; round < rounds; ++round) {
     std::vector<double> rests;
     for (std::size_t i = 0; i < values.size(); ++i)
       if (given[i] > 0) rests.push_back(std::abs(values[i] - curve[i]));
     const double scale = std::max(smallest_scale, 1.4826 * median(std::move(rests)));
+    const double cut = 4.685 * scale * std::max(1.0, 4.0 - round);
     for (std::size_t i = 0; i < values.size(); ++i) {
       if (given[i] <= 0) continue;
-      const double u = (values[i] - curve[i]) / (4.685 * scale);
+      const double u = (values[i] - curve[i]) / cut;
       weights[i] = std::abs(u) < 1 ? given[i] * (1 - u * u) * (1 - u * u) : 0;
     }
-    curve = smooth(values, weights, round < rounds / 2 ? 2 * cutoff : cutoff);
+    curve = smooth(values, weights, round < 2 ? 2 * cutoff : cutoff);
   }
   return curve;
 }

@@ -24,6 +24,7 @@ constexpr double least_found_share = 0.7;
 
 Straightened flipped(const Straightened& profiles) {
   Straightened out = profiles;
+  out.values = cv::Mat();  // else the copy would share, and turn, the original's pixels
   cv::flip(profiles.values, out.values, 1);
   return out;
 }
@@ -63,7 +64,7 @@ class TubeMeasure {
   TubeShape measure() {
     for (int round = 0; round < rounds; ++round) {
       lay_out();
-      find_walls();
+      find_walls(round + 1 == rounds);
       if (round + 1 < rounds) centre_axis();
     }
     TubeShape shape;
@@ -90,7 +91,7 @@ class TubeMeasure {
     cover_ = straighten(mask_, axis_, span, 0.5);
   }
 
-  void find_walls() {
+  void find_walls(bool by_section) {
     const std::size_t count = axis_.size();
     BorderSearch upper = search();
     BorderSearch lower = search();
@@ -115,6 +116,7 @@ class TubeMeasure {
       upper.expected[i] = lower.expected[i] = none;
     }
     upper.half_width = lower.half_width = half_;
+    upper.by_section = lower.by_section = by_section;
     walls_.upper = find_border(flipped(pixels_), upper);
     walls_.lower = find_border(pixels_, lower);
   }
@@ -290,8 +292,11 @@ class TubeMeasure {
       return p.x >= -0.5 && p.y >= -0.5 && p.x <= image_.cols - 0.5 && p.y <= image_.rows - 0.5;
     };
     constexpr double fine = 0.1;
+    const bool both = in_view(walls_.upper) && in_view(walls_.lower);
     for (double at = left.station; at < right.station; at += fine) {
-      const auto point = axis_.place(at, 0);
+      const auto i = std::min(static_cast<std::size_t>(std::max(at, 0.0)), axis_.size() - 1);
+      const double middle = both ? (walls_.lower.position[i] - walls_.upper.position[i]) / 2 : 0;
+      const auto point = axis_.place(at, middle);
       if (seen(point)) line.push_back(point);
     }
     if (line.size() < 2) line = {axis_.points.front(), axis_.points.back()};

@@ -28,6 +28,7 @@ struct BorderSearch {
   double outside_level = 0;          ///< where no outside is in view
   double blur = 4;                   ///< next to the edge neither level holds
   std::optional<double> half_width;  ///< of the tube, where the profiles start at its axis
+  bool by_section = true;            ///< false: half height only, for a first guess
   double cutoff = 100;  ///< waves shorter than this are no shape of the border, profiles
 };
 

@@ -17,8 +17,9 @@ struct EdgeProfile {
 
 /// Where the edge lies against the half-height position, pixels, positive outwards. Half height is
 /// pushed out by a wall that glows and pulled in by a round section. The profile is fitted by a
-/// blurred step, the chord of a circle, and a bright line along the edge; a term stays only where
-/// it explains most of what is left without it, so that a plain edge is left where it is.
+/// blurred step on light that may tilt, the chord of a circle, and a bright line along the edge;
+/// the last two stay only where they explain much of what is left without them, so that a plain
+/// edge is left where it is.
 double edge_offset(const EdgeProfile& profile);
 
 }  // namespace wavefount::tube
