@@ -1,3 +1,5 @@
+#include <opencv2/core.hpp>
+
 #include "wavefount/core/plugin.h"
 #include "wavefount/core/prescan.h"
 
