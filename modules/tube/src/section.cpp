@@ -153,11 +153,15 @@ double edge_offset(const EdgeProfile& profile) {
   const double good = good_deviation * good_deviation * static_cast<double>(profile.values.size());
   double edge = 0;
   double left = plain.misfit();
+  // On an even inside a line that glows stands out above all of it.
+  const bool bright_line =
+      *std::max_element(profile.values.begin(), profile.values.end()) > 1 + least_line;
   constexpr Terms models[] = {{true, false, false}, {false, true, false}, {false, false, true},
                               {true, false, true},  {false, true, true},  {true, true, true}};
   for (const Terms& terms : models) {
     if (left <= good) break;
     if (terms.chord && !(profile.half_width.value_or(0) > 2 * farthest_px)) continue;
+    if (terms.line && !terms.chord && !bright_line) continue;
     SectionFit fit(profile, terms);
     fit.run();
     if (fit.misfit() > (1 - worth_share) * left || !fit.terms_matter()) continue;

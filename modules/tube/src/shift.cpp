@@ -51,6 +51,23 @@ std::optional<float> interpolated(const cv::Mat& image, double x, double y) {
   return (1 - v) * ((1 - u) * row[0] + u * row[1]) + v * ((1 - u) * next[0] + u * next[1]);
 }
 
+/// Spread of what stands still: noise and uneven bleaching, the same all over the tube. Taken where
+/// it is larger, since the outside has less noise.
+double usual_spread(const cv::Mat& spread) {
+  std::vector<double> values;
+  for (int y = 0; y < spread.rows; y += 3)
+    for (int x = 0; x < spread.cols; x += 3) values.push_back(spread.at<float>(y, x));
+  return quantile(std::move(values), 0.6);
+}
+
+/// What varies more than that is nuclei that come, go or flow. Their edges move together, so they
+/// must weigh less than independent noise of the same size.
+double varied_square(double spread, double usual) {
+  constexpr double together = 5;
+  const double more = std::max(0.0, spread * spread - 4 * usual * usual);
+  return spread * spread + together * together * more;
+}
+
 }  // namespace
 
 struct ShiftReference::Fit {
@@ -75,6 +92,7 @@ std::vector<ShiftReference::Anchor> ShiftReference::edges(const cv::Mat* spread)
   const cv::Mat& image = image_.smoothed();
   const double noise_variance = image_.noise() * image_.noise();
   const double least = std::pow(edge_over_noise * gradient_noise_share * image_.noise(), 2);
+  const double usual = spread ? usual_spread(*spread) : 0;
   std::vector<Anchor> found;
   for (int y = 2; y + 2 < image.rows; ++y) {
     const float* row = image.ptr<float>(y);
@@ -86,9 +104,9 @@ std::vector<ShiftReference::Anchor> ShiftReference::edges(const cv::Mat* spread)
       const float gradient_y = 0.5F * (below[x] - above[x]);
       const double squared = gradient_x * gradient_x + gradient_y * gradient_y;
       if (!(squared > least)) continue;
-      const double varied = varying ? varying[x] : 0;
+      const double varied = varying ? varied_square(varying[x], usual) : 0;
       const double variance =
-          varied * varied + noise_variance + edge_tolerance_px * edge_tolerance_px * squared;
+          varied + noise_variance + edge_tolerance_px * edge_tolerance_px * squared;
       found.push_back({static_cast<float>(x), static_cast<float>(y), row[x], gradient_x, gradient_y,
                        static_cast<float>(variance)});
     }
