@@ -31,6 +31,12 @@ constexpr double agreement_scale = 1.5;
 constexpr double neighbour_inflation = 2;
 /// A direction with a standard error above this is blind.
 constexpr double blind_se_px = 0.3;
+/// So is one whose edges are confirmed by less than this share.
+constexpr double blind_agreement = 0.35;
+/// A jump that nuclei tell of: this much more of them must agree with it than without it, and at
+/// least this share.
+constexpr double jump_margin = 0.2;
+constexpr double jump_agreement = 0.65;
 /// A far candidate is better than the prior only beyond this margin of agreement.
 constexpr double candidate_margin = 0.08;
 constexpr int candidate_peaks = 5;
@@ -80,12 +86,30 @@ struct ShiftReference::Fit {
   Eigen::Matrix4d information = Eigen::Matrix4d::Zero();
 };
 
-ShiftReference::ShiftReference(const Image& reduced, const Image* spread, double least_agreement)
-    : image_(reduced), least_agreement_(least_agreement) {
+ShiftReference::ShiftReference(const Image& reduced, const Image* spread) : image_(reduced) {
   cv::Mat spread_matrix;
   if (spread) spread_matrix = as_matrix(*spread);
   choose_anchors(edges(spread ? &spread_matrix : nullptr));
   image_.spectrum();
+}
+
+ShiftReference::ShiftReference(const OpenedThumb& thumb) : image_(*thumb.image) {
+  auto candidates = edges(nullptr);
+  drop_gentle(candidates);
+  choose_anchors(std::move(candidates));
+  image_.spectrum();
+}
+
+void ShiftReference::drop_gentle(std::vector<Anchor>& candidates) {
+  // Walls, ends and bubbles share one blur and nearly one contrast, so that their slopes differ
+  // little; clouds of released light are wider than that blur by far.
+  constexpr double steep_share = 0.3;
+  std::vector<double> slopes;
+  for (const auto& one : candidates) slopes.push_back(std::hypot(one.gradient_x, one.gradient_y));
+  const double least = steep_share * quantile(std::move(slopes), 0.97);
+  std::erase_if(candidates, [least](const Anchor& one) {
+    return std::hypot(one.gradient_x, one.gradient_y) < least;
+  });
 }
 
 std::vector<ShiftReference::Anchor> ShiftReference::edges(const cv::Mat* spread) const {
@@ -259,7 +283,7 @@ Shift ShiftReference::judge(const Fit& fit, double prior_x, double prior_y) cons
     const double se = neighbour_inflation * fit.scale / std::sqrt(strength);
     const double total = direction.dot(seen * direction);
     const double share = total > 0 ? direction.dot(confirmed * direction) / total : 0;
-    if (se < blind_se_px && share > least_agreement_) {
+    if (se < blind_se_px && share > blind_agreement) {
       shift.se = std::min(shift.se, se);
       continue;
     }
@@ -352,6 +376,16 @@ Shift ShiftReference::find(const MovingImage& moving, double prior_x, double pri
     to_beat = other.agreement;
   }
   return best;
+}
+
+cv::Point2d ShiftReference::find_jump(const MovingImage& moving, double prior_x,
+                                      double prior_y) const {
+  const auto near = refine(moving, prior_x, prior_y, prior_x, prior_y);
+  if (near.agreement > 1 - jump_margin) return {prior_x, prior_y};
+  const auto best = find(moving, prior_x, prior_y, true);
+  const bool jumped = best.blind_directions == 0 && best.agreement > jump_agreement &&
+                      best.agreement > near.agreement + jump_margin;
+  return jumped ? cv::Point2d(best.x, best.y) : cv::Point2d(prior_x, prior_y);
 }
 
 }  // namespace wavefount::tube
