@@ -234,7 +234,8 @@ class Flips : public BadInput,
               public ::testing::WithParamInterface<std::tuple<TiffCompression, int, bool>> {};
 
 TEST_P(Flips, OfBytesNeverEndInMoreThanAProblem) {
-  folder_ = std::filesystem::path(::testing::TempDir()) / "wavefount-flips";
+  folder_ = std::filesystem::path(::testing::TempDir()) /
+            ("wavefount-flips-" + std::to_string(::getpid()));
   std::filesystem::remove_all(folder_);
   std::filesystem::create_directories(folder_);
   TiffLayout layout;

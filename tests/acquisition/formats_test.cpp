@@ -16,7 +16,8 @@ using Combination = std::tuple<PixelFormat, TiffCompression, int, bool, bool>;
 class Formats : public testing::FilmFolder, public ::testing::WithParamInterface<Combination> {
  protected:
   void SetUp() override {
-    folder_ = std::filesystem::path(::testing::TempDir()) / "wavefount-formats";
+    folder_ = std::filesystem::path(::testing::TempDir()) /
+              ("wavefount-formats-" + std::to_string(::getpid()));
     std::filesystem::remove_all(folder_);
     std::filesystem::create_directories(folder_);
   }

@@ -260,7 +260,8 @@ TEST_F(Metadata, UnknownKeysGetTheNearestKnownOne) {
 class BadSidecar : public Metadata, public ::testing::WithParamInterface<const char*> {
  protected:
   void SetUp() override {
-    folder_ = std::filesystem::path(::testing::TempDir()) / "wavefount-bad-sidecar";
+    folder_ = std::filesystem::path(::testing::TempDir()) /
+              ("wavefount-bad-sidecar-" + std::to_string(::getpid()));
     std::filesystem::remove_all(folder_);
     std::filesystem::create_directories(folder_);
   }

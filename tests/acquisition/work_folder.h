@@ -1,6 +1,7 @@
 #pragma once
 
 #include <gtest/gtest.h>
+#include <unistd.h>
 
 #include <filesystem>
 #include <fstream>
@@ -14,7 +15,8 @@ class WorkFolder : public ::testing::Test {
   void SetUp() override {
     const auto* test = ::testing::UnitTest::GetInstance()->current_test_info();
     folder_ = std::filesystem::path(::testing::TempDir()) /
-              (std::string("wavefount-") + test->test_suite_name() + "-" + test->name());
+              (std::string("wavefount-") + test->test_suite_name() + "-" + test->name() + "-" +
+               std::to_string(::getpid()));
     std::filesystem::remove_all(folder_);
     std::filesystem::create_directories(folder_);
   }

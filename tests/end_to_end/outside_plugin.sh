@@ -12,7 +12,7 @@ cmake -G Ninja -S "$source/tests/pipelines/outside" -B "$work/plugin" \
   -DCMAKE_PREFIX_PATH="$work/installed" > "$work/configure.log"
 cmake --build "$work/plugin" > "$work/build.log"
 
-"$work/installed/bin/wavefount" demo "$work/demo" --frames 6 --view-um 500 --scenario single-interior
+"$work/installed/bin/wavefount" demo "$work/demo" --frames 6 --view-um 500 --scenario thin-interior
 sed 's/^  - find-nuclei$/  - flag-bright-frames: {limit_counts: 1}\n  - find-nuclei/' \
   "$work/installed/share/wavefount/pipelines/extract-tube.yaml" > "$work/pipeline.yaml"
 "$work/installed/bin/wavefount" steps flag-bright-frames --plugins "$work/plugin"

@@ -44,6 +44,7 @@ int status_of(int wait_status) {
 
 std::string test_name() {
   const auto* info = testing::UnitTest::GetInstance()->current_test_info();
+  if (info == nullptr) return "suite" + std::to_string(getpid());  // set up for a whole suite
   return std::string(info->test_suite_name()) + "." + info->name();
 }
 

@@ -1,4 +1,5 @@
 #include <gtest/gtest.h>
+#include <unistd.h>
 
 #include <filesystem>
 #include <fstream>
@@ -11,7 +12,8 @@ namespace wavefount {
 namespace {
 
 std::filesystem::path file_with(const std::string& text) {
-  const auto path = std::filesystem::path(testing::TempDir()) / "pipeline_test.yaml";
+  const auto path = std::filesystem::path(testing::TempDir()) /
+                    ("pipeline_test_" + std::to_string(::getpid()) + ".yaml");
   std::ofstream(path) << text;
   return path;
 }
