@@ -48,16 +48,6 @@ TEST(ScanAhead, DriftOfKeyframesWithAJump) {
   EXPECT_LT(quantile(errors, 1), 0.6);
 }
 
-TEST(ScanAhead, NucleiThatFlowAreNoDrift) {
-  auto scene = scene_of(24);
-  for (int k = 0; k < 12; ++k)
-    scene.blobs.push_back({120.0 + 24 * k, 100.0 + 17 * (k % 3), 9, 400, 0, 1000, 0.8});
-  const testing::SceneSource source(scene);
-  Messages messages;
-  const auto scan = scan_ahead(source, {}, messages).prescan;
-  for (const double shift : scan.shift_x_px) EXPECT_LT(std::abs(shift), 0.5);
-}
-
 TEST(ScanAhead, FactorFollowsFromTheSmallestRadius) {
   FilmDescription film;
   film.width = 1500;

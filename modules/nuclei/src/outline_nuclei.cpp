@@ -276,7 +276,7 @@ class Cluster {
     const double half_radius = std::sqrt(shape.area / std::numbers::pi);
     const double blur = edge_blur(shape, seed.peak);
     const double edge = blur / half_radius;
-    if (edge > softest_edge && half_radius > limits_.cloud_radius_px) return;
+    if (half_radius > limits_.cloud_radius_px && soft(index, box, half_radius)) return;
     const double radius = half_radius / disc_with_edge(edge).half_radius;
     if (radius < limits_.smallest_radius_px || radius > limits_.largest_radius_px) return;
     Sighting sighting = candidates_[bodies_[index].candidate];
@@ -291,6 +291,13 @@ class Cluster {
     if (sighting.brightness <= limits_.significance * std::sqrt(sighting.brightness_variance))
       return;
     sightings.push_back(std::move(sighting));
+  }
+
+  /// Whether a wide outline is that of a cloud.
+  bool soft(std::size_t index, const cv::Rect& box, double half_radius) const {
+    const double slope = wide_slope(labels_, static_cast<int>(index), box, smooth_, half_radius);
+    return seeds_[index].peak >
+           softest_edge * std::sqrt(2 * std::numbers::pi) * slope * half_radius;
   }
 
   /// A half level that lies below the cytoplasm somewhere lets the region run to its reach.

@@ -161,6 +161,39 @@ RegionShape shape_of(const cv::Mat1i& labels, int label, const cv::Rect& box,
   return Walk(labels, label, box, image, half).run();
 }
 
+double wide_slope(const cv::Mat1i& labels, int label, const cv::Rect& box, const cv::Mat1f& image,
+                  double radius) {
+  const double depth = radius / 4;
+  const int margin = static_cast<int>(std::ceil(depth)) + 3;
+  const cv::Rect near =
+      cv::Rect(box.x - margin, box.y - margin, box.width + 2 * margin, box.height + 2 * margin) &
+      cv::Rect(0, 0, labels.cols, labels.rows);
+  const cv::Mat1i part = labels(near);
+  const cv::Mat1f values = image(near);
+  cv::Mat1b own(part.size());
+  for (int y = 0; y < part.rows; ++y)
+    for (int x = 0; x < part.cols; ++x) own(y, x) = part(y, x) == label ? 255 : 0;
+  cv::Mat1f inner;
+  cv::distanceTransform(own, inner, cv::DIST_L2, cv::DIST_MASK_5);
+  cv::bitwise_not(own, own);
+  cv::Mat1f outer;
+  cv::distanceTransform(own, outer, cv::DIST_L2, cv::DIST_MASK_5);
+  double sums[2] = {0, 0};
+  int counts[2] = {0, 0};
+  for (int y = 0; y < part.rows; ++y) {
+    for (int x = 0; x < part.cols; ++x) {
+      const bool inside = part(y, x) == label;
+      if (!inside && part(y, x) >= 0) continue;
+      const float distance = inside ? inner(y, x) : outer(y, x);
+      if (std::abs(static_cast<double>(distance) - depth) > 1) continue;
+      sums[inside ? 0 : 1] += static_cast<double>(values(y, x));
+      ++counts[inside ? 0 : 1];
+    }
+  }
+  if (counts[0] == 0 || counts[1] == 0) return 0;
+  return (sums[0] / counts[0] - sums[1] / counts[1]) / (2 * depth);
+}
+
 double solidity(const std::vector<Run>& runs) {
   if (runs.empty()) return 0;
   std::vector<cv::Point> corners;

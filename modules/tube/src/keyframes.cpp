@@ -15,6 +15,9 @@ namespace {
 
 /// A chained shift is replaced by the direct one when that is confirmed at least this well.
 constexpr double trusted_agreement = 0.6;
+/// Nuclei form, move and vanish between keyframes: they tell of the stage only when this share of
+/// their edges lies upon others.
+constexpr double nuclei_agreement = 0.65;
 /// Once with the shifts of the chain, twice with those against the median image.
 constexpr int median_rounds = 2;
 
@@ -111,7 +114,7 @@ void put(const Shift& shift, std::size_t k, AlignedImages& aligned) {
 }
 
 /// Each against the one before, and, where that holds better, against the first. In a direction in
-/// which nothing but nuclei tells, these speak of jumps.
+/// which nothing but nuclei tells, these speak, if nearly all of them agree.
 void chain(const std::vector<ImagePointer>& images, double blob_px, AlignedImages& aligned) {
   std::vector<OpenedThumb> thumbs;
   std::vector<MovingImage> moving;
@@ -119,16 +122,17 @@ void chain(const std::vector<ImagePointer>& images, double blob_px, AlignedImage
     thumbs.push_back(opened_thumb(*image, blob_px));
     moving.emplace_back(*thumbs.back().image);
   }
-  const ShiftReference first(thumbs[0]);
+  const ShiftReference first(*thumbs[0].image);
   const double factor = thumbs[0].factor;
   for (std::size_t k = 1; k < images.size(); ++k) {
-    const ShiftReference before(thumbs[k - 1]);
+    const ShiftReference before(*thumbs[k - 1].image);
     auto step = before.find(moving[k], 0, 0, true);
     double nuclei_x = 0;
     double nuclei_y = 0;
     if (step.blind_directions > 0) {
-      const ShiftReference nuclei(*images[k - 1]);
-      const auto seen = nuclei.find_jump(MovingImage(*images[k]), factor * step.x, factor * step.y);
+      const ShiftReference nuclei(*images[k - 1], nullptr, nuclei_agreement);
+      const auto seen =
+          nuclei.find(MovingImage(*images[k]), factor * step.x, factor * step.y, true);
       const double x = seen.x - factor * step.x;
       const double y = seen.y - factor * step.y;
       const bool both = step.blind_directions == 2;

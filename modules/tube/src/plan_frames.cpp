@@ -16,6 +16,8 @@ namespace {
 constexpr int least_margin_px = 8;
 /// Bright nuclei of a float film may reach this many times the range seen ahead.
 constexpr double headroom = 4;
+/// Nuclei tell of the stage only when this share of their edges lies upon others.
+constexpr double nuclei_agreement = 0.65;
 
 ImagePointer cropped(const Image& image, int left, int top, int width, int height) {
   auto part = make_image(width, height);
@@ -163,11 +165,11 @@ FramePlan plan_frames(const FilmDescription& film, const Prescan& prescan,
   const auto still = combine_at(parts, plan.key_x, plan.key_y);
   plan.blob_px = 2 * largest_radius_um / (film.pixel_um * reduced.factor());
   plan.standing = std::make_unique<ShiftReference>(*still.median, still.spread.GetPointer());
-  plan.coarse = std::make_unique<ShiftReference>(opened_thumb(*still.median, plan.blob_px));
+  plan.coarse = std::make_unique<ShiftReference>(*opened_thumb(*still.median, plan.blob_px).image);
   std::vector<double> agreements;
   for (std::size_t k = 0; k < parts.size(); ++k) {
     plan.key_light.push_back(mean_inside(*parts[k], plan.inside));
-    plan.keys.emplace_back(*parts[k]);
+    plan.keys.emplace_back(*parts[k], nullptr, nuclei_agreement);
     agreements.push_back(
         plan.standing->find(MovingImage(*parts[k]), plan.key_x[k], plan.key_y[k], false).agreement);
   }

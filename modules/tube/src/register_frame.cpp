@@ -18,7 +18,8 @@ Along against_key(const MovingImage& moving, const FramePlan& plan, std::size_t 
                   const ExpectedShift& expected, double direction_x, double direction_y) {
   const double prior_x = expected.x - plan.key_x[key];
   const double prior_y = expected.y - plan.key_y[key];
-  const auto shift = plan.keys[key].find_jump(moving, prior_x, prior_y);
+  const auto shift = plan.keys[key].find(moving, prior_x, prior_y, false);
+  if (shift.blind_directions > 0) return {};
   return {(shift.x - prior_x) * direction_x + (shift.y - prior_y) * direction_y, share};
 }
 

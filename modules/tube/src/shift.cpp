@@ -31,12 +31,6 @@ constexpr double agreement_scale = 1.5;
 constexpr double neighbour_inflation = 2;
 /// A direction with a standard error above this is blind.
 constexpr double blind_se_px = 0.3;
-/// So is one whose edges are confirmed by less than this share.
-constexpr double blind_agreement = 0.35;
-/// A jump that nuclei tell of: this much more of them must agree with it than without it, and at
-/// least this share.
-constexpr double jump_margin = 0.2;
-constexpr double jump_agreement = 0.65;
 /// A far candidate is better than the prior only beyond this margin of agreement.
 constexpr double candidate_margin = 0.08;
 constexpr int candidate_peaks = 5;
@@ -57,23 +51,6 @@ std::optional<float> interpolated(const cv::Mat& image, double x, double y) {
   return (1 - v) * ((1 - u) * row[0] + u * row[1]) + v * ((1 - u) * next[0] + u * next[1]);
 }
 
-/// Spread of what stands still: noise and uneven bleaching, the same all over the tube. Taken where
-/// it is larger, since the outside has less noise.
-double usual_spread(const cv::Mat& spread) {
-  std::vector<double> values;
-  for (int y = 0; y < spread.rows; y += 3)
-    for (int x = 0; x < spread.cols; x += 3) values.push_back(spread.at<float>(y, x));
-  return quantile(std::move(values), 0.6);
-}
-
-/// What varies more than that is nuclei that come, go or flow. Their edges move together, so they
-/// must weigh less than independent noise of the same size.
-double varied_square(double spread, double usual) {
-  constexpr double together = 5;
-  const double more = std::max(0.0, spread * spread - 4 * usual * usual);
-  return spread * spread + together * together * more;
-}
-
 }  // namespace
 
 struct ShiftReference::Fit {
@@ -86,37 +63,18 @@ struct ShiftReference::Fit {
   Eigen::Matrix4d information = Eigen::Matrix4d::Zero();
 };
 
-ShiftReference::ShiftReference(const Image& reduced, const Image* spread) : image_(reduced) {
+ShiftReference::ShiftReference(const Image& reduced, const Image* spread, double least_agreement)
+    : image_(reduced), least_agreement_(least_agreement) {
   cv::Mat spread_matrix;
   if (spread) spread_matrix = as_matrix(*spread);
   choose_anchors(edges(spread ? &spread_matrix : nullptr));
   image_.spectrum();
 }
 
-ShiftReference::ShiftReference(const OpenedThumb& thumb) : image_(*thumb.image) {
-  auto candidates = edges(nullptr);
-  drop_gentle(candidates);
-  choose_anchors(std::move(candidates));
-  image_.spectrum();
-}
-
-void ShiftReference::drop_gentle(std::vector<Anchor>& candidates) {
-  // Walls, ends and bubbles share one blur and nearly one contrast, so that their slopes differ
-  // little; clouds of released light are wider than that blur by far.
-  constexpr double steep_share = 0.3;
-  std::vector<double> slopes;
-  for (const auto& one : candidates) slopes.push_back(std::hypot(one.gradient_x, one.gradient_y));
-  const double least = steep_share * quantile(std::move(slopes), 0.97);
-  std::erase_if(candidates, [least](const Anchor& one) {
-    return std::hypot(one.gradient_x, one.gradient_y) < least;
-  });
-}
-
 std::vector<ShiftReference::Anchor> ShiftReference::edges(const cv::Mat* spread) const {
   const cv::Mat& image = image_.smoothed();
   const double noise_variance = image_.noise() * image_.noise();
   const double least = std::pow(edge_over_noise * gradient_noise_share * image_.noise(), 2);
-  const double usual = spread ? usual_spread(*spread) : 0;
   std::vector<Anchor> found;
   for (int y = 2; y + 2 < image.rows; ++y) {
     const float* row = image.ptr<float>(y);
@@ -128,9 +86,9 @@ std::vector<ShiftReference::Anchor> ShiftReference::edges(const cv::Mat* spread)
       const float gradient_y = 0.5F * (below[x] - above[x]);
       const double squared = gradient_x * gradient_x + gradient_y * gradient_y;
       if (!(squared > least)) continue;
-      const double varied = varying ? varied_square(varying[x], usual) : 0;
+      const double varied = varying ? varying[x] : 0;
       const double variance =
-          varied + noise_variance + edge_tolerance_px * edge_tolerance_px * squared;
+          varied * varied + noise_variance + edge_tolerance_px * edge_tolerance_px * squared;
       found.push_back({static_cast<float>(x), static_cast<float>(y), row[x], gradient_x, gradient_y,
                        static_cast<float>(variance)});
     }
@@ -283,7 +241,7 @@ Shift ShiftReference::judge(const Fit& fit, double prior_x, double prior_y) cons
     const double se = neighbour_inflation * fit.scale / std::sqrt(strength);
     const double total = direction.dot(seen * direction);
     const double share = total > 0 ? direction.dot(confirmed * direction) / total : 0;
-    if (se < blind_se_px && share > blind_agreement) {
+    if (se < blind_se_px && share > least_agreement_) {
       shift.se = std::min(shift.se, se);
       continue;
     }
@@ -376,16 +334,6 @@ Shift ShiftReference::find(const MovingImage& moving, double prior_x, double pri
     to_beat = other.agreement;
   }
   return best;
-}
-
-cv::Point2d ShiftReference::find_jump(const MovingImage& moving, double prior_x,
-                                      double prior_y) const {
-  const auto near = refine(moving, prior_x, prior_y, prior_x, prior_y);
-  if (near.agreement > 1 - jump_margin) return {prior_x, prior_y};
-  const auto best = find(moving, prior_x, prior_y, true);
-  const bool jumped = best.blind_directions == 0 && best.agreement > jump_agreement &&
-                      best.agreement > near.agreement + jump_margin;
-  return jumped ? cv::Point2d(best.x, best.y) : cv::Point2d(prior_x, prior_y);
 }
 
 }  // namespace wavefount::tube

@@ -52,7 +52,7 @@ class WaveOrigins {
         candidates_(view.fields->candidates[at]) {
     // Steeper than this, a difference of half a period is within the scatter of neighbours.
     constexpr double steep = 0.8;
-    constexpr double contradicting = 0.2;
+    constexpr double contradicting = 0.1;
     findings_.number_doubtful =
         view.fields->steepness[at] > steep || view.fields->contradicting_share[at] > contradicting;
   }

@@ -78,7 +78,7 @@ ImagePointer reduce_frame(Image& pixels, const ReducedFilm& film, const FramePla
 
 /// Shift of a reduced frame, into `observation`: against the median image of the prescan; in a
 /// direction of which nothing that stands still tells, by the nuclei of the two nearest keyframes,
-/// weighted by distance in time, where these tell of a jump; else no change.
+/// weighted by distance in time, if nearly all of them agree; else no change.
 void register_frame(const Image& reduced, const FramePlan& plan, int factor,
                     FrameObservation& observation);
 

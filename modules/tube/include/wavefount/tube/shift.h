@@ -45,15 +45,6 @@ class MovingImage {
   mutable cv::Mat spectrum_;
 };
 
-/// The image without nuclei: binned to at most 256 pixels a side and opened (Serra 1982) with a
-/// disc of `blob_px` reduced pixels, so that walls, ends and bubbles stay and all that is small and
-/// bright goes. Made for the coarse shift that nuclei must not speak in.
-struct OpenedThumb {
-  ImagePointer image;
-  int factor = 1;  ///< reduced pixels a side of a thumbnail pixel
-};
-OpenedThumb opened_thumb(const Image& reduced, double blob_px);
-
 /// What images are compared with. Coarse: phase correlation of thumbnails (Kuglin & Hines 1975),
 /// its few highest peaks as candidates. Fine: least squares on brightness at the reference's
 /// strongest edges (Lucas & Kanade 1981, inverse compositional, Baker & Matthews 2004) with Tukey's
@@ -63,19 +54,12 @@ OpenedThumb opened_thumb(const Image& reduced, double blob_px);
 class ShiftReference {
  public:
   /// `spread`: how much each pixel varies in time beside shifts, counts, or null: edges that vary
-  /// weigh little.
-  explicit ShiftReference(const Image& reduced, const Image* spread = nullptr);
-  /// For the coarse shift: of what nuclei have left behind, light that spreads and depletion, the
-  /// gentle slopes are left out.
-  explicit ShiftReference(const OpenedThumb& thumb);
+  /// weigh little. `least_agreement`: a direction whose edges are confirmed by less is blind.
+  explicit ShiftReference(const Image& reduced, const Image* spread = nullptr,
+                          double least_agreement = 0.35);
 
   /// `wide_search`: try the peaks of the phase correlation too, not only the prior.
   Shift find(const MovingImage& moving, double prior_x, double prior_y, bool wide_search) const;
-
-  /// For a reference in which nothing but nuclei tells: they form, grow and drift by themselves, so
-  /// a small change against the prior is none of the stage's. Only a jump after which they lie upon
-  /// others far better than without it counts; else the prior comes back.
-  cv::Point2d find_jump(const MovingImage& moving, double prior_x, double prior_y) const;
 
  private:
   /// One edge pixel of the reference: `variance` is of its brightness beside noise of the other.
@@ -85,7 +69,6 @@ class ShiftReference {
   struct Fit;
 
   std::vector<Anchor> edges(const cv::Mat* spread) const;
-  static void drop_gentle(std::vector<Anchor>& candidates);
   void choose_anchors(std::vector<Anchor> candidates);
   void sample(const MovingImage& moving, Fit& fit) const;
   bool improve(Fit& fit) const;
@@ -94,8 +77,18 @@ class ShiftReference {
   std::vector<cv::Point2d> peaks(const MovingImage& moving) const;
 
   MovingImage image_;
+  double least_agreement_;
   std::vector<Anchor> anchors_;
   std::array<double, 4> directions_{1, 0, 0, 1};  ///< weaker, then stronger unit vector
 };
+
+/// The image without nuclei: binned to at most 256 pixels a side and opened (Serra 1982) with a
+/// disc of `blob_px` reduced pixels, so that walls, ends and bubbles stay and all that is small and
+/// bright goes. Made for the coarse shift that nuclei must not speak in.
+struct OpenedThumb {
+  ImagePointer image;
+  int factor = 1;  ///< reduced pixels a side of a thumbnail pixel
+};
+OpenedThumb opened_thumb(const Image& reduced, double blob_px);
 
 }  // namespace wavefount::tube
